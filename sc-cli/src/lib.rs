@@ -1,0 +1,1 @@
+//! The parts of the `prevertex` program: files, units, words, figures and exit codes around `sc-core`.

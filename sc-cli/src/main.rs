@@ -1,0 +1,2 @@
+//! The `prevertex` program.
+fn main() {}

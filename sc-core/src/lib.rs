@@ -1,0 +1,3 @@
+//! Plane potential fields on polygonal sections by Schwarz–Christoffel mapping.
+
+pub mod outline;

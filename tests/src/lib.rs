@@ -1,0 +1,1 @@
+//! Support for the checks: reference tables and independent methods that share no code with the map.
