@@ -1,1 +1,3 @@
 //! Support for the checks: reference tables and independent methods that share no code with the map.
+
+pub mod reference;
