@@ -208,10 +208,10 @@ def dump(path, document):
         out.write('{\n"about": {\n' + about + '\n},\n"cases": [\n' + cases + "\n]\n}\n")
 
 
-def with_sensitivity(case):
-    """The case with the two fields placed after its value."""
+def with_sensitivity(case, as_read=False):
+    """The case with the two fields placed after its value; `as_read` if the value was computed at the binary inputs."""
     case = {k: v for k, v in case.items() if k not in ("value_at", "input_sensitivity")}
-    if case["vertices"] and inputs_are_binary(case):
+    if as_read or (case["vertices"] and inputs_are_binary(case)):
         fields = {"value_at": "exact binary", "input_sensitivity": "0"}
     elif case["bounded"]:
         size = bound(case)

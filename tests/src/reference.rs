@@ -180,6 +180,27 @@ pub enum Ask {
         #[serde(deserialize_with = "point")]
         at: Complex64,
     },
+    /// Harmonic measure, seen from a point, of the boundary from one vertex anticlockwise to another: the
+    /// fraction of the circle between their prevertices when the point is the image of the centre.
+    HarmonicMeasure {
+        /// The point.
+        #[serde(deserialize_with = "point")]
+        at: Complex64,
+        /// First vertex.
+        from: usize,
+        /// Last vertex.
+        to: usize,
+    },
+    /// |C| in `f′(t) = C ∏ (t − t_k)^(α_k − 1)`, the product over all vertices but `infinity`, with the
+    /// half-plane as domain and three prevertices at 0, 1 and infinity.
+    MapConstant {
+        /// Vertex with its prevertex at 0.
+        zero: usize,
+        /// Vertex with its prevertex at 1.
+        one: usize,
+        /// Vertex with its prevertex at infinity.
+        infinity: usize,
+    },
     /// `(V_D − V_C) / I` for a current I in at A and out at B, point contacts on an insulated boundary:
     /// (1/π) ln[(AC·BD) / (AD·BC)] in the prevertices.
     TransferResistance {
@@ -303,7 +324,7 @@ impl Value {
 /// Which inputs a value holds for.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Deserialize)]
 pub enum ValueAt {
-    /// The decimal inputs, which are binary numbers.
+    /// The numbers as they are read: the inputs are binary numbers.
     #[serde(rename = "exact binary")]
     ExactBinary,
     /// The decimal inputs, of which at least one is not a binary number.
@@ -319,6 +340,16 @@ pub enum ValueAt {
 #[must_use]
 pub fn load_cases() -> Vec<Case> {
     CASE_FILES.iter().flat_map(|file| load_case_file(file)).collect()
+}
+
+/// Published Schwarz-Christoffel examples: triangles, rectangles, regular polygons, plus and L shapes.
+///
+/// # Panics
+///
+/// As [`load_cases`].
+#[must_use]
+pub fn load_published_maps() -> Vec<Case> {
+    load_case_file("published-maps")
 }
 
 /// The cases of one of the [`CASE_FILES`].

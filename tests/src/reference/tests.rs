@@ -1,9 +1,17 @@
 use super::*;
 
+/// The cases of all files, the published maps included.
+fn all_cases() -> Vec<Case> {
+    let mut cases = load_cases();
+    cases.extend(load_published_maps());
+    cases
+}
+
 #[test]
 fn every_file_has_all_its_rows() {
     let rows = CASE_FILES.map(|file| load_case_file(file).len());
     assert_eq!(rows, [87, 68, 68, 61, 68]);
+    assert_eq!(load_published_maps().len(), 53);
     assert_eq!(load_irregular().len(), 42);
     assert_eq!(load_simple_300().len(), 300);
 }
@@ -18,16 +26,16 @@ fn bounded_rows_are_counted() {
 fn ids_are_unique_and_stand_in_their_file() {
     let mut ids = std::collections::BTreeSet::new();
     for file in CASE_FILES {
-        for case in load_case_file(file) {
-            assert_eq!(case.discipline, file, "{}", case.id);
-            assert!(ids.insert(case.id.clone()), "{} twice", case.id);
-        }
+        assert!(load_case_file(file).iter().all(|case| case.discipline == file), "{file}");
+    }
+    for case in all_cases() {
+        assert!(ids.insert(case.id.clone()), "{} twice", case.id);
     }
 }
 
 #[test]
 fn angles_sum_to_n_minus_two_and_agree_with_the_outline() {
-    for case in load_cases().iter().filter(|case| !case.vertices.is_empty()) {
+    for case in all_cases().iter().filter(|case| !case.vertices.is_empty()) {
         let n = case.vertices.len();
         assert_eq!(case.angles_over_pi.len(), n, "{}", case.id);
         let sum: f64 = case.angles_over_pi.iter().sum();
@@ -67,7 +75,7 @@ fn finite_angle(case: &Case, k: usize) -> f64 {
 
 #[test]
 fn every_case_has_a_condition_on_each_side_or_asks_for_the_map_alone() {
-    for case in load_cases() {
+    for case in all_cases() {
         assert_eq!(
             case.bounded,
             !case.vertices.is_empty() && case.finite_vertices().is_some(),
@@ -79,6 +87,8 @@ fn every_case_has_a_condition_on_each_side_or_asks_for_the_map_alone() {
             Ask::CrossRatio { .. }
                 | Ask::EllipticModulus { .. }
                 | Ask::ConformalRadius { .. }
+                | Ask::HarmonicMeasure { .. }
+                | Ask::MapConstant { .. }
                 | Ask::LogarithmicCapacity { .. }
                 | Ask::PrevertexRatio { .. }
         );
@@ -89,7 +99,7 @@ fn every_case_has_a_condition_on_each_side_or_asks_for_the_map_alone() {
 
 #[test]
 fn questions_refer_to_sides_and_vertices_that_exist() {
-    for case in load_cases() {
+    for case in all_cases() {
         let (n, id) = (case.vertices.len(), &case.id);
         let indices: Vec<usize> = match &case.ask {
             Ask::Flux { sides, .. } | Ask::PotentialIntegral { sides, .. } => sides.clone(),
@@ -127,6 +137,8 @@ fn questions_refer_to_sides_and_vertices_that_exist() {
             Ask::PrevertexRatio { numerator, denominator, zero, infinity } => {
                 vec![*numerator, *denominator, *zero, *infinity]
             }
+            Ask::HarmonicMeasure { from, to, .. } => vec![*from, *to],
+            Ask::MapConstant { zero, one, infinity } => vec![*zero, *one, *infinity],
             _ => Vec::new(),
         };
         assert!(indices.iter().all(|&k| k < n), "{id}: {indices:?} of {n}");
@@ -158,7 +170,7 @@ fn conductances_lie_between_exactly_two_held_values() {
 
 #[test]
 fn bounded_cases_bound_the_rounding_of_their_inputs() {
-    for case in load_cases().iter().filter(|case| case.bounded) {
+    for case in all_cases().iter().filter(|case| case.bounded) {
         let sensitivity = case.input_sensitivity.unwrap_or(f64::INFINITY);
         // a case that moves by more than this is of no use at double precision
         assert!(sensitivity <= 1e-13 * case.value.scale().max(1.0), "{}: {sensitivity:e}", case.id);
