@@ -216,7 +216,6 @@ impl<'a> Solver<SideLengths<'a>, LineState> for DampedGaussNewton {
             let Some(equations) = &self.equations else { break };
             let Some(factor) = self.factor.take().or_else(|| equations.factor(self.damping)) else { break };
             let mut step = equations.step(&factor, &residuals);
-            if std::env::var("OBS").is_ok() { let e = equations.normal.clone().symmetric_eigenvalues(); eprintln!("    damping {:.1e} eig {:.2e} {:.2e} step {:.2e}", self.damping, e.min(), e.max(), step.iter().fold(0.0_f64,|m,s|m.max(s.abs()))); }
             let largest = step.iter().fold(0.0_f64, |m, s| m.max(s.abs()));
             if largest > MAX_STEP {
                 step.iter_mut().for_each(|s| *s *= MAX_STEP / largest);

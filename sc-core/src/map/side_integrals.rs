@@ -38,7 +38,8 @@ const PARALLEL_WORK: usize = 6_000;
 #[derive(Debug, Clone)]
 pub(crate) struct RuleSet {
     legendre: Arc<Rule>,
-    /// One rule per point; shared between points of equal exponent.
+    /// One rule per point; shared between points of equal exponent. A pole, whose integral diverges, has none and
+    /// stands as the Legendre rule.
     at_point: Vec<Arc<Rule>>,
     /// Weight `v^{−2 − Σ a}` in `v = 1/t`, for the sides that meet infinity.
     at_infinity: Option<Arc<Rule>>,
@@ -58,13 +59,25 @@ impl RuleSet {
             known.push(made.clone());
             Ok(made)
         };
-        let at_point = exponents.iter().map(|&a| rule(a)).collect::<Result<_, _>>()?;
+        let at_point = exponents
+            .iter()
+            .map(|&a| if a <= -1.0 { Ok(legendre.clone()) } else { rule(a) })
+            .collect::<Result<_, _>>()?;
         let at_infinity = rule(-2.0 - exponents.iter().sum::<f64>()).ok();
         Ok(RuleSet { legendre, at_point, at_infinity, exponents: exponents.to_vec() })
     }
 
     pub(crate) fn exponents(&self) -> &[f64] {
         &self.exponents
+    }
+
+    pub(crate) fn legendre(&self) -> &Rule {
+        &self.legendre
+    }
+
+    /// The rule for the weight at a point.
+    pub(crate) fn at_point(&self, j: usize) -> &Rule {
+        &self.at_point[j]
     }
 }
 
@@ -348,6 +361,10 @@ struct Surroundings {
 /// One row of results: `ln I` and the derivative row.
 fn one_side(line: &GapLine, rules: &RuleSet, side: usize, want_derivatives: bool) -> (f64, Vec<f64>) {
     let m = line.n_points();
+    let ends = if side < m - 1 { [side, side + 1] } else { [if side == m { 0 } else { m - 1 }; 2] };
+    if ends.iter().any(|&j| rules.exponents[j] <= -1.0) {
+        return (f64::INFINITY, if want_derivatives { vec![0.0; m - 1] } else { Vec::new() });
+    }
     let singular = |j: &usize| rules.exponents[*j] != 0.0;
     let mut row = if want_derivatives { vec![0.0; m - 1] } else { Vec::new() };
     if side >= m - 1 {

@@ -1,0 +1,321 @@
+//! The map itself: `f(ζ) = w_k + C ∫_{x_k}^{ζ} ∏ (ζ − x_j)^{α_j − 1} dζ`, its derivative, and places on the sides.
+
+use super::gap_line::GapLine;
+use super::half_plane::{Effort, MapError, Plan, Solved, choose_infinity, solve_parameters};
+use super::parameter_problem::IterationObserver;
+use super::power_product::{HalfPlanePoint, PowerProduct, Scaled};
+use super::side_integrals::{RuleSet, side_integrals};
+use crate::outline::{Outline, Point};
+use num_complex::Complex64;
+
+/// Nodes a panel in evaluation.
+const EVALUATION_NODES: usize = 14;
+/// Newton steps for a place on a side: the unknown is `ln t` against `ln s`, which the local power law makes nearly
+/// linear; 9 were the most seen, the rest is bisection.
+const MAX_PLACE_STEPS: usize = 80;
+/// Offsets beyond this (in the logarithm) would leave the range of `f64`.
+const MAX_LN_OFFSET: f64 = 640.0;
+
+/// How a map is solved for. The default is good; the second choice of everything gives an independent solution.
+#[derive(Debug, Clone)]
+pub struct MapOptions {
+    /// Rank of the vertex sent to infinity among those that suit: 0 the best, 1 the next.
+    pub infinity_rank: usize,
+    /// Long sides are cut at `1/split` from either end for the start.
+    pub split: f64,
+    /// Root mean square of the logarithmic side-length residuals to stop at.
+    pub tolerance: f64,
+    /// Quadrature nodes a panel in the final iteration.
+    pub nodes: usize,
+    /// Relative size of a reproducible disturbance of the side lengths, in units of the rounding of the coordinates.
+    /// Zero but in the independent check, where it makes the rounding of the input visible.
+    pub disturbance: f64,
+    /// Gaps of a neighbouring section to start from, as returned by [`HalfPlaneMap::line`] for the same vertex at
+    /// infinity.
+    pub warm_start: Option<(usize, GapLine)>,
+    /// Called after every iteration.
+    pub observer: Option<IterationObserver>,
+}
+
+impl Default for MapOptions {
+    fn default() -> Self {
+        MapOptions {
+            infinity_rank: 0,
+            split: 3.0,
+            tolerance: 1e-14,
+            nodes: 12,
+            disturbance: 0.0,
+            warm_start: None,
+            observer: None,
+        }
+    }
+}
+
+/// The conformal map of the upper half-plane onto the inside of an outline.
+#[derive(Debug, Clone)]
+pub struct HalfPlaneMap {
+    outline: Outline,
+    at_infinity: usize,
+    line: GapLine,
+    exponents: Vec<f64>,
+    product: PowerProduct,
+    /// `C = e^ln_scale · rotation`
+    ln_scale: f64,
+    rotation: Complex64,
+    /// Distance along each side (in line order) to the image of the middle of its gap.
+    half_lengths: Vec<f64>,
+    rms: f64,
+    effort: Effort,
+}
+
+impl HalfPlaneMap {
+    /// Solves the parameter problem of a bounded outline.
+    ///
+    /// # Errors
+    /// [`MapError`] if no start can be made or the iteration does not end in a map that fits.
+    ///
+    /// # Accuracy
+    /// Side lengths fit to a relative 1e-13 or better; 300 of 300 polygons of the robustness set with up to 50
+    /// sides and 230 decades of crowding converged, to 4e-14 at worst.
+    pub fn solve(outline: &Outline, options: &MapOptions) -> Result<HalfPlaneMap, MapError> {
+        let corners: Vec<Point> = (0..outline.n()).filter_map(|k| outline.point(k)).collect();
+        if corners.len() != outline.n() {
+            return Err(MapError::Unbounded);
+        }
+        let warm = options.warm_start.as_ref();
+        let at_infinity = warm
+            .map_or_else(|| choose_infinity(&corners, outline.alpha(), options.infinity_rank), |w| w.0);
+        let plan = Plan {
+            at_infinity,
+            parts: options.split,
+            target_rms: options.tolerance,
+            nodes: options.nodes,
+            disturbance: options.disturbance,
+            warm_start: warm.map(|w| w.1.clone()),
+            observer: options.observer.clone(),
+        };
+        let solved = solve_parameters(&corners, outline.alpha(), &plan)?;
+        Self::from_parameters(outline, at_infinity, solved)
+    }
+
+    fn from_parameters(outline: &Outline, at_infinity: usize, solved: Solved) -> Result<Self, MapError> {
+        let n = outline.n();
+        let exponents: Vec<f64> =
+            (0..n - 1).map(|k| outline.alpha()[(at_infinity + 1 + k) % n] - 1.0).collect();
+        let rules = RuleSet::new(&exponents, EVALUATION_NODES)?;
+        let product = PowerProduct::new(&solved.line, rules);
+        let mut map = HalfPlaneMap {
+            outline: outline.clone(),
+            at_infinity,
+            line: solved.line,
+            exponents,
+            product,
+            ln_scale: solved.ln_scale,
+            rotation: Complex64::new(1.0, 0.0),
+            half_lengths: Vec::new(),
+            rms: solved.rms,
+            effort: solved.effort,
+        };
+        // arg C from the longest side: on gap k the product has the phase π Σ_{j>k} (α_j − 1).
+        let longest = (0..n)
+            .max_by(|&a, &b| map.length(a).total_cmp(&map.length(b)).then(b.cmp(&a)))
+            .unwrap_or(0);
+        let phase = std::f64::consts::PI * map.exponents.iter().skip(longest + 1).sum::<f64>();
+        let phase = if longest == n - 1 {
+            std::f64::consts::PI * map.exponents.iter().sum::<f64>()
+        } else {
+            phase
+        };
+        map.rotation = outline.side_direction(map.vertex_of(longest)) * Complex64::from_polar(1.0, -phase);
+        map.half_lengths = (0..n)
+            .map(|k| {
+                if k + 2 < n {
+                    let ln_offset = map.line.log_gaps()[k] - map.product.ln_unit(k) - std::f64::consts::LN_2;
+                    map.travelled(on_axis(k, ln_offset, true))
+                } else {
+                    f64::INFINITY
+                }
+            })
+            .collect();
+        Ok(map)
+    }
+
+    /// The outline that is mapped onto.
+    pub fn outline(&self) -> &Outline {
+        &self.outline
+    }
+
+    /// Index (in walking order) of the vertex whose prevertex is infinity.
+    pub fn at_infinity(&self) -> usize {
+        self.at_infinity
+    }
+
+    /// The finite prevertices, from the vertex after the one at infinity onward.
+    pub fn line(&self) -> &GapLine {
+        &self.line
+    }
+
+    /// `α − 1` at the finite prevertices.
+    pub fn exponents(&self) -> &[f64] {
+        &self.exponents
+    }
+
+    /// `ln |C|` of the multiplier, for the line's own unit.
+    pub fn ln_scale(&self) -> f64 {
+        self.ln_scale
+    }
+
+    /// Root mean square of the logarithmic side-length residuals at the end of the iteration.
+    pub fn rms(&self) -> f64 {
+        self.rms
+    }
+
+    /// What the solution took.
+    pub fn effort(&self) -> &Effort {
+        &self.effort
+    }
+
+    /// Largest `|ln |C| I_k − ln side_k|`, with a quadrature rule of `nodes` nodes a panel: another rule than the one
+    /// the map was solved with makes it a statement about the map.
+    ///
+    /// # Errors
+    /// [`MapError::Rule`] if `nodes` is zero.
+    pub fn residual(&self, nodes: usize) -> Result<f64, MapError> {
+        let rules = RuleSet::new(&self.exponents, nodes)?;
+        let ln = side_integrals(&self.line, &rules, false).ln;
+        Ok(ln
+            .iter()
+            .enumerate()
+            .map(|(k, i)| (self.ln_scale + i - self.length(k).ln()).abs())
+            .fold(0.0, f64::max))
+    }
+
+    /// Walking index of the vertex with a given line index; the side of that index leaves it.
+    pub fn vertex_of(&self, line_index: usize) -> usize {
+        (self.at_infinity + 1 + line_index) % self.outline.n()
+    }
+
+    /// Line index of a vertex; `n − 1` is the one at infinity.
+    pub fn line_index_of(&self, vertex: usize) -> usize {
+        let n = self.outline.n();
+        (vertex + n - self.at_infinity - 1) % n
+    }
+
+    fn length(&self, line_index: usize) -> f64 {
+        self.outline.side_length(self.vertex_of(line_index)).unwrap_or(f64::INFINITY)
+    }
+
+    fn corner(&self, line_index: usize) -> Point {
+        self.outline.point(self.vertex_of(line_index)).unwrap_or_default()
+    }
+
+    /// `f(ζ)`.
+    pub fn forward(&self, p: HalfPlanePoint) -> Point {
+        self.corner(p.anchor) + self.from_anchor(p)
+    }
+
+    /// `f(ζ) − w_anchor`, which keeps its digits near the corner.
+    pub fn from_anchor(&self, p: HalfPlanePoint) -> Point {
+        self.product.integral(p).times(self.ln_scale, self.rotation).value()
+    }
+
+    /// The derivative of `f` in the logarithm of the offset: `f'(ζ) (ζ − x_anchor)`.
+    pub fn log_derivative(&self, p: HalfPlanePoint) -> Point {
+        let unit = self.product.ln_unit(p.anchor);
+        self.scaled_derivative(p)
+            .times(unit + p.ln_offset.re, Complex64::from_polar(1.0, p.ln_offset.im))
+            .value()
+    }
+
+    /// `f'(ζ)` in the line's unit.
+    pub(crate) fn scaled_derivative(&self, p: HalfPlanePoint) -> Scaled {
+        self.product.value(p).times(self.ln_scale, self.rotation)
+    }
+
+    /// `ln |F|` of the leading term `f(ζ) − w_k ≈ F t^α/α` at a finite prevertex.
+    pub(crate) fn ln_leading(&self, line_index: usize) -> f64 {
+        let c = self.product.coefficient(line_index);
+        self.ln_scale + c.ln_scale + c.mantissa.norm().ln()
+    }
+
+    pub(crate) fn product(&self) -> &PowerProduct {
+        &self.product
+    }
+
+    /// The same point held from the prevertex nearest to it.
+    pub fn nearest_anchor(&self, p: HalfPlanePoint) -> HalfPlanePoint {
+        self.product.nearest_anchor(p)
+    }
+
+    /// Distance along the side from the anchor's corner to the image of a point of the axis.
+    fn travelled(&self, p: HalfPlanePoint) -> f64 {
+        self.from_anchor(p).norm()
+    }
+
+    /// The preimage of the point at distance `s` along a side (walking index), `0 ≤ s ≤ length`.
+    ///
+    /// Returns `None` only for the vertex that lies at infinity.
+    pub fn on_side(&self, side: usize, s: f64) -> Option<HalfPlanePoint> {
+        let n = self.outline.n();
+        let k = self.line_index_of(side);
+        let length = self.length(k);
+        let (from_start, from_end) = (s.max(0.0), (length - s).max(0.0));
+        // Sides that meet infinity are anchored at their finite end.
+        let at_start = if k == n - 2 {
+            true
+        } else if k == n - 1 {
+            false
+        } else {
+            from_start <= self.half_lengths[k]
+        };
+        let (anchor, distance) = if at_start { (k, from_start) } else { ((k + 1) % n, from_end) };
+        let ln_offset =
+            self.ln_offset_at(anchor, at_start, distance, if k + 2 < n { None } else { Some(length) })?;
+        Some(self.nearest_anchor(on_axis(anchor, ln_offset, at_start)))
+    }
+
+    /// The `ln` offset at which the image has moved by `distance` along a side. `whole` is the length of a side that
+    /// runs to the vertex at infinity.
+    fn ln_offset_at(&self, anchor: usize, rightward: bool, distance: f64, whole: Option<f64>) -> Option<f64> {
+        if distance == 0.0 {
+            return Some(f64::NEG_INFINITY);
+        }
+        if whole.is_some_and(|w| distance >= w) {
+            return None;
+        }
+        let alpha = self.exponents[anchor] + 1.0;
+        let ln_speed = self.ln_leading(anchor) + alpha * self.product.ln_unit(anchor);
+        let mut lambda = (((distance * alpha).ln() - ln_speed) / alpha).min(MAX_LN_OFFSET);
+        let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
+        let mut stride = 2.0;
+        for _ in 0..MAX_PLACE_STEPS {
+            let here = on_axis(anchor, lambda, rightward);
+            let travelled = self.travelled(here);
+            if travelled > distance { high = lambda } else { low = lambda }
+            let error = (travelled / distance).ln();
+            if error.abs() <= 2.0 * f64::EPSILON {
+                break;
+            }
+            let newton = lambda - error * travelled / self.log_derivative(here).norm();
+            let next = if newton > low && newton < high && (newton - lambda).abs() < 40.0 {
+                newton
+            } else if low.is_finite() && high.is_finite() {
+                0.5 * (low + high)
+            } else {
+                stride *= 2.0;
+                if high.is_finite() { lambda - stride } else { lambda + stride }
+            };
+            if (next - lambda).abs() <= f64::EPSILON * lambda.abs().max(0.1) || next > MAX_LN_OFFSET {
+                break;
+            }
+            lambda = next;
+        }
+        Some(lambda)
+    }
+}
+
+/// A point of the real axis at `e^ln_offset` right or left of the anchor.
+fn on_axis(anchor: usize, ln_offset: f64, rightward: bool) -> HalfPlanePoint {
+    let angle = if rightward { 0.0 } else { std::f64::consts::PI };
+    HalfPlanePoint { anchor, ln_offset: Complex64::new(ln_offset, angle) }
+}

@@ -1,0 +1,472 @@
+//! A product of powers in the upper half-plane, its value and its integral from one of its points.
+//!
+//! ```text
+//! P(ζ) = ∏_j (ζ − x_j)^{a_j},    0 ≤ arg(ζ − x_j) ≤ π
+//! ```
+//! Both the derivative of the map and the complex field on the half-plane are such products. Points are known by
+//! their gaps only, so `ζ` is held as an anchor point and an offset in the anchor's own unit.
+
+use super::gap_line::GapLine;
+use super::side_integrals::RuleSet;
+use crate::quadrature::ln_positive;
+use num_complex::Complex64;
+use std::f64::consts::{FRAC_PI_2, PI};
+
+/// Distances beyond this many anchor units are constants for every offset that the anchor serves.
+const FINITE_DISTANCE: f64 = 1e280;
+/// A panel starting at distance `d` from the nearest other singularity is at most `GROWTH × d` long.
+const GROWTH: f64 = 1.5;
+/// Panels in one path. Each grows by 2.5, so 2000 span more than the range of `f64`.
+const MAX_PANELS: usize = 2000;
+
+/// A point of the closed upper half-plane: `ζ = x_anchor + unit_anchor · e^ln_offset`, `0 ≤ Im ln_offset ≤ π`.
+///
+/// The unit of an anchor is its distance to the nearest other point. The representation keeps full relative
+/// accuracy of `ζ − x_j` for every `j` as long as the anchor is the nearest point, and reaches into corners so sharp
+/// that the offset itself would underflow (a corner of 0.02 π turns 1e-9 of the side into `e^−1000`).
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct HalfPlanePoint {
+    /// Index of the anchor in the line.
+    pub anchor: usize,
+    /// Logarithm of the offset in anchor units; real part `−∞` at the anchor itself.
+    pub ln_offset: Complex64,
+}
+
+impl HalfPlanePoint {
+    /// The point at an offset in anchor units. An imaginary part below zero is taken as zero.
+    pub fn new(anchor: usize, offset: Complex64) -> HalfPlanePoint {
+        HalfPlanePoint { anchor, ln_offset: Complex64::new(offset.norm().ln(), argument(offset)) }
+    }
+
+    /// The offset in anchor units; it may underflow to zero.
+    pub fn offset(&self) -> Complex64 {
+        Complex64::from_polar(self.ln_offset.re.exp(), self.ln_offset.im)
+    }
+
+    /// Whether the point is on the real axis, that is on the boundary of the section.
+    pub fn is_real(&self) -> bool {
+        self.ln_offset.im <= 0.0 || self.ln_offset.im >= PI || self.ln_offset.re == f64::NEG_INFINITY
+    }
+}
+
+/// A complex number `e^ln_scale · mantissa`, for values beyond the range of `f64`.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Scaled {
+    pub(crate) ln_scale: f64,
+    pub(crate) mantissa: Complex64,
+}
+
+impl Scaled {
+    /// The plain number; it may overflow or vanish.
+    pub(crate) fn value(self) -> Complex64 {
+        self.mantissa * self.ln_scale.exp()
+    }
+
+    pub(crate) fn times(self, ln_factor: f64, factor: Complex64) -> Scaled {
+        Scaled { ln_scale: self.ln_scale + ln_factor, mantissa: self.mantissa * factor }
+    }
+}
+
+/// How a power is taken: most corners of practice are right angles, and square roots are much cheaper than logarithms.
+#[derive(Debug, Clone, Copy, PartialEq)]
+enum Kind {
+    Root,
+    InverseRoot,
+    Whole,
+    Inverse,
+    General,
+}
+
+#[derive(Debug, Clone, Copy)]
+struct Factor {
+    exponent: f64,
+    kind: Kind,
+    /// Signed distance `x_anchor − x_j` in anchor units: positive for points to the left.
+    shift: f64,
+    ln_distance: f64,
+}
+
+#[derive(Debug, Clone, Copy)]
+struct Neighbour {
+    index: usize,
+    /// Position in anchor units.
+    position: f64,
+}
+
+/// The product seen from one of its points.
+#[derive(Debug, Clone)]
+struct View {
+    /// `ln` of the anchor's unit.
+    ln_unit: f64,
+    self_exponent: f64,
+    factors: Vec<Factor>,
+    /// Every other point within reach, for the choice of the nearest anchor.
+    neighbours: Vec<Neighbour>,
+    /// `Σ a_j ln |x_j − x_anchor|` over points too far to vary.
+    far_ln: f64,
+    /// Phase `π Σ a_j` over far points on the right.
+    far_phase: f64,
+}
+
+/// The product, prepared for evaluation near each of its points.
+#[derive(Debug, Clone)]
+pub(crate) struct PowerProduct {
+    views: Vec<View>,
+    rules: RuleSet,
+}
+
+impl PowerProduct {
+    pub(crate) fn new(line: &GapLine, rules: RuleSet) -> PowerProduct {
+        let exponents = rules.exponents();
+        let views = (0..line.n_points())
+            .map(|k| {
+                let d = line.ln_distances(k);
+                let ln_unit = unit(line, k);
+                let mut view = View {
+                    ln_unit,
+                    self_exponent: exponents[k],
+                    factors: Vec::new(),
+                    neighbours: Vec::new(),
+                    far_ln: 0.0,
+                    far_phase: 0.0,
+                };
+                for (j, &a) in exponents.iter().enumerate() {
+                    let distance = (d[j] - ln_unit).exp();
+                    if j != k && distance < FINITE_DISTANCE {
+                        let position = if j < k { -distance } else { distance };
+                        view.neighbours.push(Neighbour { index: j, position });
+                    }
+                    if j == k || a == 0.0 {
+                        continue;
+                    }
+                    if distance > FINITE_DISTANCE {
+                        view.far_ln += a * d[j];
+                        if j > k {
+                            view.far_phase += PI * a;
+                        }
+                    } else {
+                        view.factors.push(Factor {
+                            exponent: a,
+                            kind: kind(a),
+                            shift: if j < k { distance } else { -distance },
+                            ln_distance: d[j],
+                        });
+                    }
+                }
+                view
+            })
+            .collect();
+        PowerProduct { views, rules }
+    }
+
+    /// `ln` of the unit of an anchor.
+    pub(crate) fn ln_unit(&self, anchor: usize) -> f64 {
+        self.views[anchor].ln_unit
+    }
+
+    /// The same point held from the point of the line nearest to it.
+    pub(crate) fn nearest_anchor(&self, p: HalfPlanePoint) -> HalfPlanePoint {
+        let mut here = p;
+        // Each move at least halves the distance or goes to a direct neighbour of the right one.
+        for _ in 0..8 {
+            let view = &self.views[here.anchor];
+            let offset = here.offset();
+            let own = offset.norm();
+            if own < 0.5 {
+                break;
+            }
+            let Some((best, distance)) = view
+                .neighbours
+                .iter()
+                .map(|n| (n, (offset - n.position).norm()))
+                .min_by(|a, b| a.1.total_cmp(&b.1))
+            else {
+                break;
+            };
+            if distance >= own {
+                break;
+            }
+            let scale = (view.ln_unit - self.views[best.index].ln_unit).exp();
+            here = HalfPlanePoint::new(
+                best.index,
+                Complex64::new((offset.re - best.position) * scale, offset.im.max(0.0) * scale),
+            );
+        }
+        here
+    }
+
+    /// The value at a point that is not itself a singular point.
+    pub(crate) fn value(&self, p: HalfPlanePoint) -> Scaled {
+        let view = &self.views[p.anchor];
+        let others = view.others(p.offset());
+        if view.self_exponent == 0.0 {
+            return others;
+        }
+        let own = Complex64::from_polar(1.0, view.self_exponent * p.ln_offset.im);
+        others.times(view.self_exponent * (p.ln_offset.re + view.ln_unit), own)
+    }
+
+    /// The value without the anchor's own factor, at the anchor: the coefficient of the leading power there.
+    pub(crate) fn coefficient(&self, anchor: usize) -> Scaled {
+        self.views[anchor].others(Complex64::new(0.0, 0.0))
+    }
+
+    /// `∫ P dζ` from the anchor to the point, along the straight line. Needs the anchor's exponent above −1.
+    pub(crate) fn integral(&self, p: HalfPlanePoint) -> Scaled {
+        let view = &self.views[p.anchor];
+        let ln_r = p.ln_offset.re;
+        if ln_r == f64::NEG_INFINITY {
+            return Scaled { ln_scale: 0.0, mantissa: Complex64::new(0.0, 0.0) };
+        }
+        let r = ln_r.exp();
+        let angle = p.ln_offset.im;
+        let direction = Complex64::from_polar(1.0, angle);
+        let a = view.self_exponent;
+        let mut sum = Sum::default();
+        let mut end = panel_end(view, direction, 0.0, r);
+        let ln_end = if end < r { end.ln() } else { ln_r };
+        let rule = self.rules.at_point(p.anchor);
+        for (t, w) in rule.points() {
+            sum.add(view.others(direction * (t * end)), w, (1.0 + a) * ln_end);
+        }
+        for _ in 0..MAX_PANELS {
+            if end >= r {
+                break;
+            }
+            let start = end;
+            end = panel_end(view, direction, start, r);
+            let width = end - start;
+            for (t, w) in self.rules.legendre().points() {
+                let at = start + width * t;
+                let own = if a == 0.0 { 0.0 } else { a * ln_positive(at) };
+                sum.add(view.others(direction * at), w * width, own);
+            }
+        }
+        sum.total().times((1.0 + a) * view.ln_unit, Complex64::from_polar(1.0, (1.0 + a) * angle))
+    }
+
+    /// `∫ P dζ` along the straight segment between two points with one anchor, which must keep its distance from all
+    /// singular points: at least the length of the segment, or more panels are taken.
+    pub(crate) fn segment(&self, anchor: usize, from: Complex64, to: Complex64) -> Scaled {
+        let view = &self.views[anchor];
+        let (step, length) = (to - from, (to - from).norm());
+        let mut sum = Sum::default();
+        let mut start = 0.0;
+        for _ in 0..MAX_PANELS {
+            if start >= 1.0 || length == 0.0 {
+                break;
+            }
+            let here = from + step * start;
+            let mut end = (start + GROWTH * view.nearest(here) / length).min(1.0);
+            let reach = |e: f64| view.nearest(from + step * e) / length;
+            while end - start > 1e-6 && reach(end) * GROWTH < (end - start) * 0.5 {
+                end = start + 0.5 * (end - start);
+            }
+            for (t, w) in self.rules.legendre().points() {
+                let at = from + step * (start + (end - start) * t);
+                let value = view.others(at);
+                let own = view.self_exponent;
+                let value = if own == 0.0 {
+                    value
+                } else {
+                    value.times(own * at.norm().ln(), Complex64::from_polar(1.0, own * argument(at)))
+                };
+                sum.add(value, w * (end - start), 0.0);
+            }
+            start = end;
+        }
+        sum.total().times((1.0 + view.self_exponent) * view.ln_unit, step)
+    }
+}
+
+/// `ln` of the distance from a point of the line to its nearest neighbour.
+pub(crate) fn unit(line: &GapLine, k: usize) -> f64 {
+    let gaps = line.log_gaps();
+    let left = if k > 0 { gaps[k - 1] } else { f64::INFINITY };
+    let right = gaps.get(k).copied().unwrap_or(f64::INFINITY);
+    let unit = left.min(right);
+    if unit.is_finite() { unit } else { 0.0 }
+}
+
+fn kind(a: f64) -> Kind {
+    // Exact comparison is meant: these are exponents of exact right angles, ends and poles.
+    #[allow(clippy::float_cmp, reason = "the cheap branch is right only for the exact exponent")]
+    let is = |v: f64| a == v;
+    if is(0.5) {
+        Kind::Root
+    } else if is(-0.5) {
+        Kind::InverseRoot
+    } else if is(1.0) {
+        Kind::Whole
+    } else if is(-1.0) {
+        Kind::Inverse
+    } else {
+        Kind::General
+    }
+}
+
+/// Argument in `[0, π]`; rounding below the real axis is taken as on it.
+fn argument(z: Complex64) -> f64 {
+    if z.im > 0.0 {
+        z.im.atan2(z.re)
+    } else if z.re >= 0.0 {
+        0.0
+    } else {
+        PI
+    }
+}
+
+/// Square root in the first quadrant of a number in the closed upper half-plane.
+#[inline]
+fn upper_sqrt(z: Complex64) -> Complex64 {
+    let r = z.norm_sqr().sqrt();
+    if z.re >= 0.0 {
+        let re = (0.5 * (r + z.re)).sqrt();
+        if re > 0.0 { Complex64::new(re, 0.5 * z.im / re) } else { Complex64::new(0.0, 0.0) }
+    } else {
+        let im = (0.5 * (r - z.re)).sqrt();
+        Complex64::new(0.5 * z.im / im, im)
+    }
+}
+
+impl View {
+    /// `∏_{j ≠ anchor}` at an offset.
+    fn others(&self, offset: Complex64) -> Scaled {
+        let r = offset.norm_sqr().sqrt();
+        let inverse_r = if r > 0.0 { 1.0 / r } else { 0.0 };
+        let ln_r = if r > 0.0 { r.ln() + self.ln_unit } else { 0.0 };
+        let y = offset.im.max(0.0);
+        let mut ln_scale = self.far_ln;
+        let mut phase = self.far_phase;
+        let mut top = Complex64::new(1.0, 0.0);
+        let mut bottom = Complex64::new(1.0, 0.0);
+        for f in &self.factors {
+            let distance = f.shift.abs();
+            let scale = if distance >= r {
+                ln_scale += f.exponent * f.ln_distance;
+                1.0 / distance
+            } else {
+                ln_scale += f.exponent * ln_r;
+                inverse_r
+            };
+            let z = Complex64::new((offset.re + f.shift) * scale, y * scale);
+            match f.kind {
+                Kind::Root => top *= upper_sqrt(z),
+                Kind::InverseRoot => bottom *= upper_sqrt(z),
+                Kind::Whole => top *= z,
+                Kind::Inverse => bottom *= z,
+                Kind::General => {
+                    ln_scale += 0.5 * f.exponent * ln_positive(z.norm_sqr().max(1e-300));
+                    phase += f.exponent * argument(z);
+                }
+            }
+        }
+        let mut mantissa = top / bottom;
+        if phase != 0.0 {
+            mantissa *= Complex64::from_polar(1.0, phase);
+        }
+        Scaled { ln_scale, mantissa }
+    }
+
+    /// Distance of an offset from the nearest singular point, the anchor included if it is one.
+    fn nearest(&self, offset: Complex64) -> f64 {
+        let own = if self.self_exponent == 0.0 { f64::INFINITY } else { offset.norm() };
+        self.factors.iter().map(|f| (offset + f.shift).norm()).fold(own, f64::min)
+    }
+}
+
+/// End of a panel on the ray from the anchor, that starts at distance `start` and aims at `target`.
+fn panel_end(view: &View, direction: Complex64, start: f64, target: f64) -> f64 {
+    let nearest = if start == 0.0 {
+        view.factors.iter().map(|f| f.shift.abs()).fold(f64::INFINITY, f64::min)
+    } else {
+        view.nearest(direction * start)
+    };
+    let mut end = (start + GROWTH * nearest).min(target);
+    // A singular point ahead: keep it at least a third of the panel's length away.
+    for _ in 0..60 {
+        let ahead =
+            view.factors.iter().map(|f| (direction * end + f.shift).norm()).fold(f64::INFINITY, f64::min);
+        if 3.0 * ahead >= end - start {
+            break;
+        }
+        end = start + 0.5 * (end - start);
+    }
+    end
+}
+
+/// A sum of scaled values that rescales itself.
+#[derive(Default)]
+struct Sum {
+    scale: Option<f64>,
+    total: Complex64,
+}
+
+impl Sum {
+    fn add(&mut self, value: Scaled, weight: f64, ln_factor: f64) {
+        let ln = value.ln_scale + ln_factor;
+        let scale = match self.scale {
+            Some(scale) if ln < scale + 300.0 => scale,
+            Some(scale) => {
+                self.total *= (scale - ln).exp();
+                self.scale = Some(ln);
+                ln
+            }
+            None => {
+                self.scale = Some(ln);
+                ln
+            }
+        };
+        self.total += value.mantissa * (weight * (ln - scale).exp());
+    }
+
+    fn total(self) -> Scaled {
+        Scaled { ln_scale: self.scale.unwrap_or(0.0), mantissa: self.total }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn product(x: &[f64], a: &[f64]) -> PowerProduct {
+        let line = GapLine::new(x.windows(2).map(|w| (w[1] - w[0]).ln()).collect());
+        PowerProduct::new(&line, RuleSet::new(a, 14).unwrap())
+    }
+
+    #[test]
+    fn value_agrees_with_the_principal_powers() {
+        let (x, a) = ([0.0, 1.0, 3.0, 3.5], [-0.5, 0.3, 0.5, -0.8]);
+        let p = product(&x, &a);
+        for (anchor, unit) in [(0, 1.0), (1, 1.0), (2, 0.5), (3, 0.5)] {
+            for offset in [Complex64::new(0.3, 0.4), Complex64::new(-0.2, 1.7), Complex64::new(4.0, 1e-9)] {
+                let z = offset * unit + x[anchor];
+                let want: Complex64 = x.iter().zip(a).map(|(x, a)| (z - x).powf(a)).product();
+                let got = p.value(HalfPlanePoint::new(anchor, offset)).value();
+                assert!((got - want).norm() < 1e-14 * want.norm(), "{got} {want}");
+            }
+        }
+    }
+
+    #[test]
+    fn integral_is_the_antiderivative_of_the_arcsine_kind() {
+        // ∫_0^ζ dζ/√(ζ(ζ−1)) with the branch of the upper half-plane: from 0, 2·arcsin√ζ/(i)… checked by its square.
+        let p = product(&[0.0, 1.0], &[-0.5, -0.5]);
+        for offset in [Complex64::new(0.3, 0.2), Complex64::new(-2.0, 0.5), Complex64::new(0.4, 3.0)] {
+            let got = p.integral(HalfPlanePoint::new(0, offset)).value();
+            // sin²(i·got/2) = ζ, whichever sign the root has.
+            let s = (Complex64::i() * got * 0.5).sin();
+            assert!((s * s - offset).norm() < 1e-14 * offset.norm(), "{} {offset}", s * s);
+        }
+    }
+
+    #[test]
+    fn segment_is_the_difference_of_two_integrals() {
+        let p = product(&[0.0, 1.0, 3.0, 3.5], &[-0.5, 0.3, 0.5, -0.8]);
+        let (a, b) = (Complex64::new(0.2, 0.1), Complex64::new(-1.0, 2.0));
+        let whole = p.integral(HalfPlanePoint::new(1, b)).value()
+            - p.integral(HalfPlanePoint::new(1, a)).value();
+        let direct = p.segment(1, a, b).value();
+        assert!((whole - direct).norm() < 1e-13 * whole.norm(), "{whole} {direct}");
+    }
+}
