@@ -117,6 +117,21 @@ pub enum OutlineFault {
         /// Heading of the leaving side.
         leaving: f64,
     },
+    /// A heading so many turns away that its digits are lost.
+    #[error(
+        "vertex {vertex} runs off toward {arriving} and comes back from {leaving}; \
+         headings must be within {limit} degrees either way"
+    )]
+    HeadingTooLarge {
+        /// The vertex at infinity.
+        vertex: VertexIdx,
+        /// Heading of the arriving side.
+        arriving: f64,
+        /// Heading of the leaving side.
+        leaving: f64,
+        /// The largest heading in absolute value.
+        limit: f64,
+    },
     /// Not enough vertices to enclose anything.
     #[error("{given} vertices are given; an outline of this kind needs at least {needed}")]
     TooFewVertices {

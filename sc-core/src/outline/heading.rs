@@ -55,6 +55,8 @@ pub(super) fn alpha_at_infinity(arriving: f64, leaving: f64) -> f64 {
 
 #[cfg(test)]
 mod tests {
+    #![expect(clippy::float_cmp, reason = "axis headings promise exact angles")]
+
     use super::*;
 
     #[test]

@@ -81,7 +81,7 @@ impl Outline {
     }
 
     /// How often the closed walk goes around `z`: signed crossings of the half-line from `z` toward `+x`.
-    fn winding(&self, z: Point) -> i32 {
+    pub(super) fn winding(&self, z: Point) -> i32 {
         let y = z.im;
         let mut winding = 0;
         for k in 0..self.n() {

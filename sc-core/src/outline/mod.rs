@@ -17,12 +17,15 @@ mod numbering;
 mod validate;
 mod walk;
 
+#[cfg(test)]
+mod tests;
+
 use num_complex::Complex64;
 use robust::{Coord, orient2d};
 
 pub use faults::{OutlineFault, OutlineFaults, OutlineWarning, SideIdx, VertexIdx, Warned};
 pub use locate::{Containment, Nearest};
-pub use validate::{COINCIDENCE, MAX_COORDINATE, MAX_REMOTENESS, MIN_SIZE};
+pub use validate::{COINCIDENCE, MAX_COORDINATE, MAX_HEADING, MAX_REMOTENESS, MIN_SIZE};
 
 use numbering::Numbering;
 use walk::{Course, Walk};

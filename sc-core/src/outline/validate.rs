@@ -1,6 +1,6 @@
 //! From the user's list of vertices to an outline, or to everything that is wrong with it.
 
-use super::angles::{close, compensated_sum, interior_angles};
+use super::angles::{compensated_sum, interior_angles};
 use super::arrangement::Arrangement;
 use super::faults::{OutlineFault, OutlineFaults, OutlineWarning, VertexIdx, Warned};
 use super::numbering::Numbering;
@@ -15,6 +15,8 @@ pub const MAX_COORDINATE: f64 = 1e140;
 pub const MIN_SIZE: f64 = 1e-120;
 /// Largest coordinate over the size of the section: nine digits are then lost to the position.
 pub const MAX_REMOTENESS: f64 = 1e9;
+/// Largest heading in degrees, either way: ten turns, beyond which only mistakes are expected.
+pub const MAX_HEADING: f64 = 3600.0;
 /// Remoteness beyond which rounding is felt and said.
 const FELT_REMOTENESS: f64 = 1e5;
 
@@ -51,7 +53,7 @@ pub(super) fn validate(given: &[Vertex]) -> Result<Warned<Outline>, OutlineFault
     faults.extend(arrangement.touches());
     let n = vertices.len();
     let tips: Vec<bool> = (0..n).map(|k| arrangement.turns_back(k)).collect();
-    let mut alpha = interior_angles(&vertices, &walk, &tips);
+    let alpha = interior_angles(&vertices, &walk, &tips);
     if faults.is_empty() {
         if bounded && (arrangement.is_tree() || area.abs() <= 8.0 * f64::EPSILON * n as f64 * size * size) {
             faults.push(OutlineFault::ZeroArea { area: area.abs(), size });
@@ -66,7 +68,6 @@ pub(super) fn validate(given: &[Vertex]) -> Result<Warned<Outline>, OutlineFault
     if !faults.is_empty() {
         return Err(OutlineFaults(faults));
     }
-    close(&mut alpha, &vertices.iter().map(|v| v.point().is_some()).collect::<Vec<_>>(), n as f64 - 2.0);
     let warnings = warnings(&walk, numbering, size, magnitude, tolerances.rounding);
     Ok(Warned { value: Outline::assemble(vertices, alpha, &walk, numbering, size), warnings })
 }
@@ -92,6 +93,14 @@ fn faults_of_numbers(given: &[Vertex]) -> Vec<OutlineFault> {
             Vertex::Away { arriving, leaving } => {
                 if !(arriving.is_finite() && leaving.is_finite()) {
                     faults.push(OutlineFault::HeadingNotFinite { vertex: vertex_idx, arriving, leaving });
+                } else if arriving.abs().max(leaving.abs()) > MAX_HEADING {
+                    let limit = MAX_HEADING;
+                    faults.push(OutlineFault::HeadingTooLarge {
+                        vertex: vertex_idx,
+                        arriving,
+                        leaving,
+                        limit,
+                    });
                 }
             }
         }
