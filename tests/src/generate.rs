@@ -1,0 +1,195 @@
+//! Irregular sections made here: random simple polygons with random electrodes, the same on every machine.
+
+use num_complex::Complex64;
+use rand_pcg::Pcg64;
+use rand_pcg::rand_core::{Rng, SeedableRng};
+
+use crate::rational::{RationalProblem, SideData};
+
+/// A generated section.
+#[derive(Debug, Clone)]
+pub struct IrregularCase {
+    /// `irregular_` and its number, sides and electrodes.
+    pub name: String,
+    /// Vertices, counter-clockwise, with three decimals.
+    pub vertices: Vec<Complex64>,
+    /// Value on each held side, `None` on insulated ones; side `k` leaves vertex `k`.
+    pub held: Vec<Option<f64>>,
+}
+
+impl IrregularCase {
+    /// The case as a problem for rational least squares.
+    #[must_use]
+    pub fn problem(&self) -> RationalProblem {
+        let side = |held: &Option<f64>| held.map_or(SideData::Insulated, SideData::Held);
+        RationalProblem { vertices: self.vertices.clone(), sides: self.held.iter().map(side).collect() }
+    }
+
+    /// Three points inside, well away from the outline.
+    #[must_use]
+    pub fn probes(&self) -> Vec<Complex64> {
+        let mut candidates: Vec<(f64, Complex64)> = Vec::new();
+        for i in 0..40 {
+            for j in 0..40 {
+                let z = Complex64::new(0.25 * f64::from(i) + 0.125, 0.25 * f64::from(j) + 0.125);
+                if contains(&self.vertices, z) {
+                    candidates.push((clearance(&self.vertices, z), z));
+                }
+            }
+        }
+        candidates.sort_by(|a, b| b.0.total_cmp(&a.0));
+        let mut probes: Vec<Complex64> = Vec::new();
+        for &(_, z) in &candidates {
+            if probes.len() < 3 && probes.iter().all(|p| (z - p).norm() > 1.5) {
+                probes.push(z);
+            }
+        }
+        probes
+    }
+}
+
+/// Source of the coordinates: 53 random bits to a number in `[0, 1)`.
+struct Uniform(Pcg64);
+
+impl Uniform {
+    fn next(&mut self) -> f64 {
+        (self.0.next_u64() >> 11) as f64 / (1_u64 << 53) as f64
+    }
+
+    /// One of `0 … count − 1`.
+    fn index(&mut self, count: usize) -> usize {
+        ((self.next() * count as f64) as usize).min(count.saturating_sub(1))
+    }
+}
+
+fn cross(a: Complex64, b: Complex64) -> f64 {
+    a.re * b.im - a.im * b.re
+}
+
+fn segments_cross(a: Complex64, b: Complex64, c: Complex64, d: Complex64) -> bool {
+    cross(b - a, c - a) * cross(b - a, d - a) < 0.0 && cross(d - c, a - c) * cross(d - c, b - c) < 0.0
+}
+
+fn segment_distance(z: Complex64, a: Complex64, b: Complex64) -> f64 {
+    let along = b - a;
+    let t = (((z - a) * along.conj()).re / along.norm_sqr()).clamp(0.0, 1.0);
+    (z - a - along * t).norm()
+}
+
+fn clearance(vertices: &[Complex64], z: Complex64) -> f64 {
+    let n = vertices.len();
+    (0..n).map(|k| segment_distance(z, vertices[k], vertices[(k + 1) % n])).fold(f64::MAX, f64::min)
+}
+
+fn contains(vertices: &[Complex64], z: Complex64) -> bool {
+    let n = vertices.len();
+    (0..n).fold(false, |inside, k| {
+        let (a, b) = (vertices[k], vertices[(k + 1) % n]);
+        let crosses =
+            (a.im > z.im) != (b.im > z.im) && z.re < a.re + (z.im - a.im) / (b.im - a.im) * (b.re - a.re);
+        inside != crosses
+    })
+}
+
+/// A closed path through random points of a 10 by 10 square, uncrossed by reversing stretches of it.
+///
+/// Each reversal shortens the path, so the loop ends; the bound is for safety. `None` when corners are sharper
+/// than 0.15π (either way) or sides come nearer than 0.5 to a vertex of another: such sections test the limits
+/// of double precision, not a method.
+fn simple_polygon(random: &mut Uniform, n: usize) -> Option<Vec<Complex64>> {
+    let decimals = |x: f64| (1000.0 * x).round() / 1000.0;
+    let mut z: Vec<Complex64> = (0..n)
+        .map(|_| Complex64::new(decimals(10.0 * random.next()), decimals(10.0 * random.next())))
+        .collect();
+    for _ in 0..1000 {
+        let crossing = (0..n)
+            .flat_map(|i| (i + 2..n).map(move |j| (i, j)))
+            .find(|&(i, j)| segments_cross(z[i], z[i + 1], z[j], z[(j + 1) % n]));
+        match crossing {
+            Some((i, j)) => z[i + 1..=j].reverse(),
+            None => break,
+        }
+    }
+    let area: f64 = (0..n).map(|k| cross(z[k] - z[0], z[(k + 1) % n] - z[0])).sum();
+    if area < 0.0 {
+        z.reverse();
+    }
+    let pi = std::f64::consts::PI;
+    let sound = (0..n).all(|k| {
+        let (before, here, after) = (z[(k + n - 1) % n], z[k], z[(k + 1) % n]);
+        let angle = ((before - here) / (after - here)).arg().rem_euclid(2.0 * pi);
+        let others = (0..n).filter(|&j| j != k && (j + 1) % n != k);
+        let apart = others.map(|j| segment_distance(here, z[j], z[(j + 1) % n])).fold(f64::MAX, f64::min);
+        angle > 0.15 * pi && angle < 1.85 * pi && apart > 0.5
+    });
+    sound.then_some(z)
+}
+
+/// Ten irregular sections of 5 to 9 sides: seven with two electrodes, three with three.
+///
+/// Electrodes are single sides or two neighbouring ones, never touching another electrode.
+#[must_use]
+pub fn irregular_ten() -> Vec<IrregularCase> {
+    let mut random = Uniform(Pcg64::seed_from_u64(1869));
+    let mut cases: Vec<IrregularCase> = Vec::new();
+    // About one polygon in ten is sound; ten thousand trials are more than will ever be drawn.
+    for _ in 0..10_000 {
+        let number = cases.len();
+        if number == 10 {
+            break;
+        }
+        let electrodes = if number % 3 == 2 { 3 } else { 2 };
+        let n = (5 + number % 5).max(2 * electrodes + 1);
+        let Some(vertices) = simple_polygon(&mut random, n) else { continue };
+        let mut held: Vec<Option<f64>> = vec![None; n];
+        let mut placed = 0;
+        for _ in 0..1000 {
+            let first = random.index(n);
+            let free = |k: usize| held[k % n].is_none();
+            if placed < electrodes && free(first + n - 1) && free(first) && free(first + 1) {
+                held[first] = Some(placed as f64);
+                placed += 1;
+            }
+        }
+        // Some electrodes take the next side as well, where an insulated one still remains after it.
+        for k in 0..n {
+            if held[k].is_some() && held[(k + n - 1) % n].is_none() && random.index(3) == 0 {
+                let next = (k + 1) % n;
+                if held[next].is_none() && held[(k + 2) % n].is_none() && n > 2 * electrodes + 1 {
+                    held[next] = held[k];
+                }
+            }
+        }
+        if placed == electrodes {
+            let name = format!("irregular_{number}_{n}_sides_{electrodes}_electrodes");
+            cases.push(IrregularCase { name, vertices, held });
+        }
+    }
+    cases
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn ten_sections_are_simple_and_have_their_electrodes() {
+        let cases = irregular_ten();
+        assert_eq!(cases.len(), 10);
+        for case in &cases {
+            let n = case.vertices.len();
+            assert!((5..=9).contains(&n), "{}", case.name);
+            for i in 0..n {
+                for j in i + 2..n {
+                    let (a, b) = (case.vertices[i], case.vertices[i + 1]);
+                    let (c, d) = (case.vertices[j], case.vertices[(j + 1) % n]);
+                    assert!(!segments_cross(a, b, c, d), "{}: sides {i} and {j} cross", case.name);
+                }
+            }
+            let electrodes = case.problem().electrodes().len();
+            assert!(case.name.ends_with(&format!("{electrodes}_electrodes")), "{}", case.name);
+            assert_eq!(case.probes().len(), 3, "{}", case.name);
+        }
+        assert_eq!(cases.iter().filter(|case| case.name.ends_with("3_electrodes")).count(), 3);
+    }
+}
