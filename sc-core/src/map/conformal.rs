@@ -287,7 +287,7 @@ impl HalfPlaneMap {
         let ln_speed = self.ln_leading(anchor) + alpha * self.product.ln_unit(anchor);
         let mut lambda = (((distance * alpha).ln() - ln_speed) / alpha).min(MAX_LN_OFFSET);
         let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
-        let mut stride = 2.0;
+        let (mut stride, mut previous) = (2.0, f64::INFINITY);
         for _ in 0..MAX_PLACE_STEPS {
             let here = on_axis(anchor, lambda, rightward);
             let travelled = self.travelled(here);
@@ -297,7 +297,10 @@ impl HalfPlaneMap {
                 break;
             }
             let newton = lambda - error * travelled / self.log_derivative(here).norm();
-            let next = if newton > low && newton < high && (newton - lambda).abs() < 40.0 {
+            // Newton may swing between two places of the bracket for ever: it must gain a factor two, or is halved.
+            let gains = error.abs() < 0.5 * previous;
+            previous = error.abs();
+            let next = if newton > low && newton < high && gains {
                 newton
             } else if low.is_finite() && high.is_finite() {
                 0.5 * (low + high)
