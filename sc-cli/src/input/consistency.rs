@@ -23,7 +23,9 @@ pub(super) fn check(reading: &Reading) -> Vec<Fault> {
             unknown_side(name, &distinct, &mut faults);
         }
     }
-    if reading.conditions_known {
+    // With no outline at all there is nothing to hold yet.
+    let outlined = !section.outline.is_empty();
+    if reading.conditions_known && outlined {
         nothing_held(section, &mut faults);
         material_missing(section, &mut faults);
     }

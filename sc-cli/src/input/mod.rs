@@ -35,7 +35,7 @@ mod not_yet;
 mod place;
 mod reader;
 mod render;
-mod trade;
+pub mod trade;
 pub mod units;
 
 pub use expression::{FUNCTION_NAMES, Formula, Operator, Sample, UndefinedValue, Variable};

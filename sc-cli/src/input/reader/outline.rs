@@ -31,7 +31,7 @@ impl Reader<'_> {
         }
         let mut vertices = Vec::with_capacity(entries.len());
         for (k, entry) in entries.iter().enumerate() {
-            vertices.push(self.read_vertex(format!("vertex {} of `{key}`", k + 1), entry));
+            vertices.push(self.read_vertex(format!("`{key}[{k}]`"), entry));
         }
         vertices.into_iter().flatten().collect()
     }

@@ -18,7 +18,7 @@ impl Reader<'_> {
         let entries = self.list_of("`probe`", value, "a list, each entry under [[probe]]").unwrap_or(&[]);
         let mut probes = Vec::new();
         for (k, entry) in entries.iter().enumerate() {
-            let table = self.table_of(format!("probe {}", k + 1), entry, "a table with `at` or `along`");
+            let table = self.table_of(format!("`probe[{k}]`"), entry, "a table with `at` or `along`");
             if let Some(probe) = table.and_then(|t| self.read_probe(&t)) {
                 probes.push(probe);
             }
