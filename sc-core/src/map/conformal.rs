@@ -269,29 +269,36 @@ impl HalfPlaneMap {
             from_start <= self.half_lengths[k]
         };
         let (anchor, distance) = if at_start { (k, from_start) } else { ((k + 1) % n, from_end) };
-        let ln_offset =
-            self.ln_offset_at(anchor, at_start, distance, if k + 2 < n { None } else { Some(length) })?;
+        // Up to the middle of the gap, or on a side to infinity as far as numbers reach.
+        let limit = if k + 2 < n {
+            self.line.log_gaps()[k] - self.product.ln_unit(anchor) - std::f64::consts::LN_2
+        } else if distance >= length {
+            return None;
+        } else {
+            MAX_LN_OFFSET
+        };
+        let ln_offset = self.ln_offset_at(anchor, at_start, distance, limit);
         Some(self.nearest_anchor(on_axis(anchor, ln_offset, at_start)))
     }
 
-    /// The `ln` offset at which the image has moved by `distance` along a side. `whole` is the length of a side that
-    /// runs to the vertex at infinity.
-    fn ln_offset_at(&self, anchor: usize, rightward: bool, distance: f64, whole: Option<f64>) -> Option<f64> {
+    /// The `ln` offset, at most `limit`, at which the image has moved by `distance` along a side.
+    fn ln_offset_at(&self, anchor: usize, rightward: bool, distance: f64, limit: f64) -> f64 {
         if distance == 0.0 {
-            return Some(f64::NEG_INFINITY);
-        }
-        if whole.is_some_and(|w| distance >= w) {
-            return None;
+            return f64::NEG_INFINITY;
         }
         let alpha = self.exponents[anchor] + 1.0;
         let ln_speed = self.ln_leading(anchor) + alpha * self.product.ln_unit(anchor);
-        let mut lambda = (((distance * alpha).ln() - ln_speed) / alpha).min(MAX_LN_OFFSET);
-        let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
+        let mut lambda = (((distance * alpha).ln() - ln_speed) / alpha).min(limit);
+        let (mut low, mut high) = (f64::NEG_INFINITY, limit);
         let (mut stride, mut previous) = (2.0, f64::INFINITY);
         for _ in 0..MAX_PLACE_STEPS {
             let here = on_axis(anchor, lambda, rightward);
             let travelled = self.travelled(here);
-            if travelled > distance { high = lambda } else { low = lambda }
+            if travelled > distance {
+                high = lambda
+            } else {
+                low = lambda
+            }
             let error = (travelled / distance).ln();
             if error.abs() <= 2.0 * f64::EPSILON {
                 break;
@@ -300,20 +307,20 @@ impl HalfPlaneMap {
             // Newton may swing between two places of the bracket for ever: it must gain a factor two, or is halved.
             let gains = error.abs() < 0.5 * previous;
             previous = error.abs();
-            let next = if newton > low && newton < high && gains {
+            let next = if newton > low && newton <= high && gains {
                 newton
             } else if low.is_finite() && high.is_finite() {
                 0.5 * (low + high)
             } else {
                 stride *= 2.0;
-                if high.is_finite() { lambda - stride } else { lambda + stride }
+                high - stride
             };
-            if (next - lambda).abs() <= f64::EPSILON * lambda.abs().max(0.1) || next > MAX_LN_OFFSET {
+            if (next - lambda).abs() <= f64::EPSILON * lambda.abs().max(0.1) {
                 break;
             }
             lambda = next;
         }
-        Some(lambda)
+        lambda
     }
 }
 
