@@ -16,3 +16,7 @@ pub use half_plane::{Effort, MapError};
 pub use parameter_problem::{IterationObserver, StopReason};
 pub use power_product::HalfPlanePoint;
 pub use start::StartError;
+
+pub(crate) use gap_line::ln_sum;
+pub(crate) use power_product::{PowerProduct, Scaled, unit};
+pub(crate) use side_integrals::{RuleSet, side_integrals};

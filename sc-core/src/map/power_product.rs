@@ -62,6 +62,18 @@ impl Scaled {
         self.mantissa * self.ln_scale.exp()
     }
 
+    /// `ln` of the absolute value.
+    pub(crate) fn ln_norm(self) -> f64 {
+        self.ln_scale + self.mantissa.norm().ln()
+    }
+
+    /// The sum of values of different scales.
+    pub(crate) fn sum(parts: impl Iterator<Item = Scaled>) -> Scaled {
+        let mut sum = Sum::default();
+        parts.for_each(|p| sum.add(p, 1.0, 0.0));
+        sum.total()
+    }
+
     pub(crate) fn times(self, ln_factor: f64, factor: Complex64) -> Scaled {
         Scaled { ln_scale: self.ln_scale + ln_factor, mantissa: self.mantissa * factor }
     }
@@ -162,6 +174,11 @@ impl PowerProduct {
     /// `ln` of the unit of an anchor.
     pub(crate) fn ln_unit(&self, anchor: usize) -> f64 {
         self.views[anchor].ln_unit
+    }
+
+    /// Exponent of a point.
+    pub(crate) fn exponent(&self, j: usize) -> f64 {
+        self.views[j].self_exponent
     }
 
     /// The same point held from the point of the line nearest to it.
@@ -371,14 +388,19 @@ impl View {
     /// Distance of an offset from the nearest singular point, the anchor included if it is one.
     fn nearest(&self, offset: Complex64) -> f64 {
         let own = if self.self_exponent == 0.0 { f64::INFINITY } else { offset.norm() };
-        self.factors.iter().map(|f| (offset + f.shift).norm()).fold(own, f64::min)
+        self.singular().map(|f| (offset + f.shift).norm()).fold(own, f64::min)
+    }
+
+    /// The other points that limit a panel: not the zeros, where the product is a polynomial.
+    fn singular(&self) -> impl Iterator<Item = &Factor> {
+        self.factors.iter().filter(|f| f.kind != Kind::Whole)
     }
 }
 
 /// End of a panel on the ray from the anchor, that starts at distance `start` and aims at `target`.
 fn panel_end(view: &View, direction: Complex64, start: f64, target: f64) -> f64 {
     let nearest = if start == 0.0 {
-        view.factors.iter().map(|f| f.shift.abs()).fold(f64::INFINITY, f64::min)
+        view.singular().map(|f| f.shift.abs()).fold(f64::INFINITY, f64::min)
     } else {
         view.nearest(direction * start)
     };
@@ -386,7 +408,7 @@ fn panel_end(view: &View, direction: Complex64, start: f64, target: f64) -> f64 
     // A singular point ahead: keep it at least a third of the panel's length away.
     for _ in 0..60 {
         let ahead =
-            view.factors.iter().map(|f| (direction * end + f.shift).norm()).fold(f64::INFINITY, f64::min);
+            view.singular().map(|f| (direction * end + f.shift).norm()).fold(f64::INFINITY, f64::min);
         if 3.0 * ahead >= end - start {
             break;
         }

@@ -1,0 +1,11 @@
+//! The potential problem on the half-plane: held and insulated sides, fluxes, conductances.
+
+mod arcs;
+mod elliptic;
+mod field;
+mod section;
+
+pub use elliptic::{EllipticError, complete_k, conductance_of_cross_ratio};
+pub(crate) use arcs::Arcs;
+pub(crate) use field::{Field, FieldBasis, FieldError};
+pub use section::{Section, SectionFault, SectionWarning};
