@@ -4,7 +4,9 @@ use super::bounded::Bounded;
 use super::corner::{Corner, CornerKind};
 use super::estimate::Evidence;
 use super::probe::{Gradient, Probe, ProbeError};
-use crate::map::{HalfPlaneMap, HalfPlanePoint, IterationObserver, MapError, MapOptions, Preimage};
+use crate::map::{
+    HalfPlaneMap, HalfPlanePoint, InverseError, IterationObserver, MapError, MapOptions, Preimage,
+};
 use crate::outline::Point;
 use crate::potential::{Arcs, Field, FieldBasis, FieldError, Section, conductance_of_cross_ratio};
 use num_complex::Complex64;
@@ -116,9 +118,8 @@ impl Half {
     /// The field with group `g` at 1 and all others at 0.
     fn unit_field(&self, section: &Section, group: usize) -> Result<Field, FieldError> {
         let values = self.basis.arcs().electrode.iter();
-        let values = values
-            .map(|e| e.map(|e| if section.group_of(e) == group { 1.0 } else { 0.0 }))
-            .collect();
+        let values =
+            values.map(|e| e.map(|e| if section.group_of(e) == group { 1.0 } else { 0.0 })).collect();
         self.basis.field(values)
     }
 
@@ -305,9 +306,8 @@ impl Solution {
             .flat_map(|r| (0..groups).filter(|&c| is_high(c)).map(move |c| (r, c)))
             .map(|(r, c)| self.matrix.values[r][c])
             .sum();
-        let touching = (0..groups).any(|r| {
-            (0..groups).any(|c| is_high(r) != is_high(c) && !self.matrix.values[r][c].is_finite())
-        });
+        let touching = (0..groups)
+            .any(|r| (0..groups).any(|c| is_high(r) != is_high(c) && !self.matrix.values[r][c].is_finite()));
         if touching {
             self.shape_factor = Some(Bounded::new(f64::INFINITY, 0.0));
             return Ok(());
@@ -459,24 +459,15 @@ impl Solution {
                 if !(z.re.is_finite() && z.im.is_finite()) {
                     return Err(ProbeError::NotFinite { x: z.re, y: z.im });
                 }
-                let nearest = self.section.outline().nearest_boundary(z);
-                let on = self.section.outline().contains(z);
-                let side = match on {
-                    crate::outline::Containment::OnSide(side) => Some(side),
-                    _ => None,
-                };
                 match &first[i] {
-                    Err(crate::map::InverseError::AtInfinity { .. }) => {
-                        let side = side.unwrap_or(nearest.side);
-                        let length = self.section.outline().side_length(side).unwrap_or(0.0);
-                        let s = self.section.outline().point(side).map_or(0.0, |w| (z - w).norm());
-                        self.probe_on_side(side, s.min(length))
+                    Err(InverseError::AtInfinity { .. }) => {
+                        let nearest = self.section.outline().nearest_boundary(z);
+                        self.probe_on_side(nearest.side, nearest.s)
                     }
                     Err(e) => Err(e.clone().into()),
                     Ok(p) => {
                         let other = second.as_ref().and_then(|s| s[i].as_ref().ok());
-                        let s = side.and_then(|k| self.section.outline().point(k)).map(|w| (z - w).norm());
-                        Ok(self.assemble(z, side, s, *p, other.copied()))
+                        Ok(self.assemble(z, *p, other.copied()))
                     }
                 }
             })
@@ -500,28 +491,25 @@ impl Solution {
         } else {
             start + outline.side_direction(side) * s
         };
-        let of = |half: &Half| half.map.on_side(side, s).map(|at| Preimage { at, miss: 0.0 });
+        let of = |half: &Half| {
+            let at = half.map.on_side(side, s)?;
+            Some(Preimage { at, miss: 0.0, on_side: Some((side, s)), clearance: 0.0 })
+        };
         match of(&self.first) {
-            Some(p) => Ok(self.assemble(z, Some(side), Some(s), p, self.second.as_ref().and_then(of))),
+            Some(p) => Ok(self.assemble(z, p, self.second.as_ref().and_then(of))),
             None => Ok(self.at_infinity(z, side, s)),
         }
     }
 
-    fn assemble(
-        &self,
-        z: Point,
-        side: Option<usize>,
-        s: Option<f64>,
-        p: Preimage,
-        other: Option<Preimage>,
-    ) -> Probe {
+    fn assemble(&self, z: Point, p: Preimage, other: Option<Preimage>) -> Probe {
+        let (side, s) = p.on_side.unzip();
         let range = self.section.range();
         let w = self.first.potential(p.at);
         let v = match (&self.second, other) {
             (Some(half), Some(q)) => half.potential(q.at),
             _ => w,
         };
-        let vertex = side.zip(s).and_then(|(k, s)| self.vertex_at(k, s));
+        let vertex = p.on_side.and_then(|(k, s)| self.vertex_at(k, s));
         let (gradient, slope) = self.gradient_at(p, other, vertex);
         let floor = self.evidence.relative(0.0) * range;
         let moved = slope * (p.miss + 2.0 * f64::EPSILON * z.norm());
@@ -598,7 +586,8 @@ impl Solution {
         });
         // On a side the gradient is normal (held) or tangential (insulated): exact directions.
         let along = outline.side_direction(vertex);
-        let exact = if self.section.electrode_of_side(vertex).is_some() { along * Complex64::i() } else { along };
+        let exact =
+            if self.section.electrode_of_side(vertex).is_some() { along * Complex64::i() } else { along };
         let sign = if (direction * exact.conj()).re < 0.0 { -1.0 } else { 1.0 };
         let g = exact * (sign * corner.coefficient.value);
         (Gradient::Finite { components: [g.re, g.im], error: corner.coefficient.error }, g.norm())
@@ -626,7 +615,10 @@ impl Solution {
             side: Some(side),
             s: Some(s),
             potential: held.map_or(Bounded::new(last.re, 4.0 * floor), |v| Bounded::new(v, 0.0)),
-            stream: Bounded::new(stream, 4.0 * self.evidence.relative(0.0) * self.matrix_scale().max(stream.abs())),
+            stream: Bounded::new(
+                stream,
+                4.0 * self.evidence.relative(0.0) * self.matrix_scale().max(stream.abs()),
+            ),
             gradient,
         }
     }
@@ -635,7 +627,8 @@ impl Solution {
     pub fn corner(&self, vertex: usize) -> Corner {
         let (kind, exponent, value) = self.first.corner(vertex);
         let other = self.second.as_ref().map_or(value, |half| half.corner(vertex).2);
-        let error = 4.0 * (value - other).abs() + self.evidence.relative(0.0) * value * (1.0 + exponent.abs());
+        let error =
+            4.0 * (value - other).abs() + self.evidence.relative(0.0) * value * (1.0 + exponent.abs());
         Corner {
             vertex,
             alpha: self.section.outline().alpha()[vertex],

@@ -83,8 +83,8 @@ impl HalfPlaneMap {
             return Err(MapError::Unbounded);
         }
         let warm = options.warm_start.as_ref();
-        let at_infinity = warm
-            .map_or_else(|| choose_infinity(&corners, outline.alpha(), options.infinity_rank), |w| w.0);
+        let at_infinity =
+            warm.map_or_else(|| choose_infinity(&corners, outline.alpha(), options.infinity_rank), |w| w.0);
         let plan = Plan {
             at_infinity,
             parts: options.split,
@@ -117,15 +117,11 @@ impl HalfPlaneMap {
             effort: solved.effort,
         };
         // arg C from the longest side: on gap k the product has the phase π Σ_{j>k} (α_j − 1).
-        let longest = (0..n)
-            .max_by(|&a, &b| map.length(a).total_cmp(&map.length(b)).then(b.cmp(&a)))
-            .unwrap_or(0);
+        let longest =
+            (0..n).max_by(|&a, &b| map.length(a).total_cmp(&map.length(b)).then(b.cmp(&a))).unwrap_or(0);
         let phase = std::f64::consts::PI * map.exponents.iter().skip(longest + 1).sum::<f64>();
-        let phase = if longest == n - 1 {
-            std::f64::consts::PI * map.exponents.iter().sum::<f64>()
-        } else {
-            phase
-        };
+        let phase =
+            if longest == n - 1 { std::f64::consts::PI * map.exponents.iter().sum::<f64>() } else { phase };
         map.rotation = outline.side_direction(map.vertex_of(longest)) * Complex64::from_polar(1.0, -phase);
         map.half_lengths = (0..n)
             .map(|k| {

@@ -110,8 +110,7 @@ pub(crate) fn solve_parameters(outline: &[Point], alpha: &[f64], plan: &Plan) ->
     }
     let split = split_sides(outline, alpha, plan.parts)?;
     let pieces = split.corners.len();
-    let at_infinity =
-        split.original.iter().position(|&o| o == Some(plan.at_infinity)).unwrap_or(pieces - 1);
+    let at_infinity = split.original.iter().position(|&o| o == Some(plan.at_infinity)).unwrap_or(pieces - 1);
     let mut start = CrossRatioStart::new(&split, at_infinity);
     let coarse = RuleSet::new(start.exponents(), COARSE_NODES)?;
     for _ in 0..MAX_SWEEPS {

@@ -71,6 +71,10 @@ pub struct Preimage {
     pub at: HalfPlanePoint,
     /// `|f(ζ) − z|`, estimated from the last Newton step.
     pub miss: f64,
+    /// The side (walking index) and the distance along it, if the point is on the boundary.
+    pub on_side: Option<(usize, f64)>,
+    /// No point of the boundary is nearer than this.
+    pub clearance: f64,
 }
 
 impl HalfPlaneMap {
@@ -92,7 +96,12 @@ impl HalfPlaneMap {
                     self.outline().point(side).map_or(0.0, |w| (z - w).norm())
                 };
                 self.on_side(side, s)
-                    .map(|at| Preimage { at, miss: nearest.distance })
+                    .map(|at| Preimage {
+                        at,
+                        miss: nearest.distance,
+                        on_side: Some((side, s)),
+                        clearance: 0.0,
+                    })
                     .ok_or(InverseError::AtInfinity { x: z.re, y: z.im })
             }
             Containment::Inside => self.from_boundary(z, &nearest),
@@ -105,12 +114,12 @@ impl HalfPlaneMap {
         let found: Vec<(usize, Result<Preimage, InverseError>)> = order
             .par_chunks(CHUNK)
             .flat_map_iter(|chunk| {
-                let mut last: Option<(Point, HalfPlanePoint)> = None;
+                let mut last: Option<(Point, Preimage)> = None;
                 chunk.iter().map(move |&i| {
                     let z = points[i];
                     let done = self.near_or_anew(z, last);
                     if let Ok(p) = &done {
-                        last = Some((z, p.at));
+                        last = Some((z, *p));
                     }
                     (i, done)
                 })
@@ -124,19 +133,15 @@ impl HalfPlaneMap {
         out.into_iter().flatten().collect()
     }
 
-    fn near_or_anew(
-        &self,
-        z: Point,
-        neighbour: Option<(Point, HalfPlanePoint)>,
-    ) -> Result<Preimage, InverseError> {
-        if let Some((z0, at)) = neighbour {
+    fn near_or_anew(&self, z: Point, neighbour: Option<(Point, Preimage)>) -> Result<Preimage, InverseError> {
+        if let Some((z0, p)) = neighbour {
             // The neighbour is inside; so is all within its distance to the boundary.
-            let reach = self.outline().nearest_boundary(z0).distance;
-            if (z - z0).norm() < NEIGHBOUR_REACH * reach
-                && let Some(start) = self.one_step(at, z - z0)
+            let distance = (z - z0).norm();
+            if distance < NEIGHBOUR_REACH * p.clearance
+                && let Some(start) = self.one_step(p.at, z - z0)
                 && let Some(done) = self.newton(start, z).ok().filter(|p| !p.at.is_real())
             {
-                return Ok(done);
+                return Ok(Preimage { clearance: p.clearance - distance, ..done });
             }
         }
         self.inverse(z)
@@ -162,7 +167,7 @@ impl HalfPlaneMap {
         for turn in [MAX_TURN, MAX_TURN / 4.0, MAX_TURN / 16.0] {
             let Some(end) = self.path(z, nearest, turn) else { continue };
             match self.newton(end, z) {
-                Ok(p) => return Ok(p),
+                Ok(p) => return Ok(Preimage { clearance: nearest.distance, ..p }),
                 Err(e) => last = e,
             }
         }
@@ -206,7 +211,7 @@ impl HalfPlaneMap {
             let u = rho.ln();
             let lambda = here.ln_offset;
             let k1 = rate(lambda, u);
-                let h = (turn / k1.norm()).min(0.6).min(reach.ln() - u);
+            let h = (turn / k1.norm()).min(0.6).min(reach.ln() - u);
             let k2 = rate(lambda + k1 * (0.5 * h), u + 0.5 * h);
             let k3 = rate(lambda + k2 * (0.5 * h), u + 0.5 * h);
             let k4 = rate(lambda + k3 * h, u + h);
@@ -234,12 +239,7 @@ impl HalfPlaneMap {
     }
 
     /// The same at the vertex whose prevertex is infinity: `f − w_n ≈ −C t^{−α}/α` for large `t`.
-    fn start_near_infinity(
-        &self,
-        vertex: usize,
-        inward: Point,
-        reach: f64,
-    ) -> Option<(HalfPlanePoint, f64)> {
+    fn start_near_infinity(&self, vertex: usize, inward: Point, reach: f64) -> Option<(HalfPlanePoint, f64)> {
         let alpha = self.outline().alpha()[vertex];
         let anchor = self.line().n_points() - 1;
         let span = (self.line().ln_distance(0, anchor) - self.product().ln_unit(anchor)).exp();
@@ -268,7 +268,8 @@ impl HalfPlaneMap {
             let image = self.from_anchor(here);
             let d = self.log_derivative(here);
             let error = target - image;
-            let change = if here.ln_offset.re < CLOSE { (target / image).ln() * image / d } else { error / d };
+            let change =
+                if here.ln_offset.re < CLOSE { (target / image).ln() * image / d } else { error / d };
             if !(change.re.is_finite() && change.im.is_finite()) {
                 break;
             }
@@ -284,10 +285,10 @@ impl HalfPlaneMap {
             let rounding = 8.0 * f64::EPSILON * (target.norm() + f64::EPSILON * size);
             // After a step of relative size ε the error is of the order ε² of the image's scale.
             if settled && relative < 1e-7 {
-                return Ok(Preimage { at: here, miss: (relative * miss).max(rounding) });
+                return Ok(inside(here, (relative * miss).max(rounding)));
             }
             if settled && miss <= 64.0 * f64::EPSILON * size && miss >= 0.25 * last {
-                return Ok(Preimage { at: here, miss: miss.max(rounding) });
+                return Ok(inside(here, miss.max(rounding)));
             }
         }
         Err(InverseError::NotReached { x: z.re, y: z.im, miss, steps: MAX_NEWTON })
@@ -296,6 +297,10 @@ impl HalfPlaneMap {
     fn corner_of(&self, anchor: usize) -> Point {
         self.outline().point(self.vertex_of(anchor)).unwrap_or_default()
     }
+}
+
+fn inside(at: HalfPlanePoint, miss: f64) -> Preimage {
+    Preimage { at, miss, on_side: None, clearance: 0.0 }
 }
 
 /// The same point, on the real axis if it is below.
@@ -314,8 +319,7 @@ fn turn_left(direction: Complex64, alpha: f64) -> f64 {
 fn along_a_curve(points: &[Point]) -> Vec<usize> {
     let finite = || points.iter().filter(|p| p.re.is_finite() && p.im.is_finite());
     let low = finite().fold((f64::INFINITY, f64::INFINITY), |m, p| (m.0.min(p.re), m.1.min(p.im)));
-    let high =
-        finite().fold((f64::NEG_INFINITY, f64::NEG_INFINITY), |m, p| (m.0.max(p.re), m.1.max(p.im)));
+    let high = finite().fold((f64::NEG_INFINITY, f64::NEG_INFINITY), |m, p| (m.0.max(p.re), m.1.max(p.im)));
     let size = (high.0 - low.0).max(high.1 - low.1).max(f64::MIN_POSITIVE);
     let mut keyed: Vec<(u64, usize)> = points
         .iter()

@@ -11,8 +11,8 @@ mod start;
 
 pub use conformal::{HalfPlaneMap, MapOptions};
 pub use gap_line::GapLine;
-pub use inverse::{InverseError, Preimage};
 pub use half_plane::{Effort, MapError};
+pub use inverse::{InverseError, Preimage};
 pub use parameter_problem::{IterationObserver, StopReason};
 pub use power_product::HalfPlanePoint;
 pub use start::StartError;

@@ -265,13 +265,8 @@ impl<'a> Solver<SideLengths<'a>, LineState> for DampedGaussNewton {
 
 /// Finds the gaps from a start.
 pub(crate) fn fit(problem: SideLengths<'_>, start: &GapLine, options: &FitOptions) -> Fit {
-    let solver = DampedGaussNewton {
-        damping: FIRST_DAMPING,
-        equations: None,
-        factor: None,
-        mean: 0.0,
-        stop: None,
-    };
+    let solver =
+        DampedGaussNewton { damping: FIRST_DAMPING, equations: None, factor: None, mean: 0.0, stop: None };
     let first = start.log_gaps().to_vec();
     let mut executor = Executor::new(problem, solver).configure(|state: LineState| {
         state.param(first).max_iters(options.max_iterations).target_cost(options.target_rms)

@@ -8,12 +8,14 @@
 
 use super::gap_line::GapLine;
 use super::side_integrals::RuleSet;
-use crate::quadrature::ln_positive;
+use crate::quadrature::{argument_upper, ln_positive};
 use num_complex::Complex64;
 use std::f64::consts::{FRAC_PI_2, PI};
 
 /// Distances beyond this many anchor units are constants for every offset that the anchor serves.
-const FINITE_DISTANCE: f64 = 1e280;
+const FINITE_DISTANCE: f64 = 1e140;
+/// Offsets up to this may be squared.
+const SQUARABLE: f64 = 1e140;
 /// A panel starting at distance `d` from the nearest other singularity is at most `GROWTH × d` long.
 const GROWTH: f64 = 1.5;
 /// Panels in one path. Each grows by 2.5, so 2000 span more than the range of `f64`.
@@ -98,6 +100,12 @@ struct Factor {
     ln_distance: f64,
 }
 
+#[derive(Debug, Clone, Default)]
+struct Columns {
+    shifts: Vec<f64>,
+    exponents: Vec<f64>,
+}
+
 #[derive(Debug, Clone, Copy)]
 struct Neighbour {
     index: usize,
@@ -112,6 +120,10 @@ struct View {
     ln_unit: f64,
     self_exponent: f64,
     factors: Vec<Factor>,
+    /// The factors without a cheap power, as plain columns for vectorised loops.
+    general: Columns,
+    /// `ln unit · Σ a_j` over `general`.
+    general_ln_unit: f64,
     /// Every other point within reach, for the choice of the nearest anchor.
     neighbours: Vec<Neighbour>,
     /// `Σ a_j ln |x_j − x_anchor|` over points too far to vary.
@@ -138,6 +150,8 @@ impl PowerProduct {
                     ln_unit,
                     self_exponent: exponents[k],
                     factors: Vec::new(),
+                    general: Columns::default(),
+                    general_ln_unit: 0.0,
                     neighbours: Vec::new(),
                     far_ln: 0.0,
                     far_phase: 0.0,
@@ -157,12 +171,13 @@ impl PowerProduct {
                             view.far_phase += PI * a;
                         }
                     } else {
-                        view.factors.push(Factor {
-                            exponent: a,
-                            kind: kind(a),
-                            shift: if j < k { distance } else { -distance },
-                            ln_distance: d[j],
-                        });
+                        let shift = if j < k { distance } else { -distance };
+                        if kind(a) == Kind::General {
+                            view.general.shifts.push(shift);
+                            view.general.exponents.push(a);
+                            view.general_ln_unit += a * ln_unit;
+                        }
+                        view.factors.push(Factor { exponent: a, kind: kind(a), shift, ln_distance: d[j] });
                     }
                 }
                 view
@@ -357,7 +372,16 @@ impl View {
         let mut phase = self.far_phase;
         let mut top = Complex64::new(1.0, 0.0);
         let mut bottom = Complex64::new(1.0, 0.0);
+        let general = r < SQUARABLE;
+        if general && !self.general.shifts.is_empty() {
+            let (ln, turned) = self.general.ln_product(offset.re, y);
+            ln_scale += ln + self.general_ln_unit;
+            phase += turned;
+        }
         for f in &self.factors {
+            if general && f.kind == Kind::General {
+                continue;
+            }
             let distance = f.shift.abs();
             let scale = if distance >= r {
                 ln_scale += f.exponent * f.ln_distance;
@@ -374,7 +398,7 @@ impl View {
                 Kind::Inverse => bottom *= z,
                 Kind::General => {
                     ln_scale += 0.5 * f.exponent * ln_positive(z.norm_sqr().max(1e-300));
-                    phase += f.exponent * argument(z);
+                    phase += f.exponent * argument_upper(z.re, z.im);
                 }
             }
         }
@@ -397,6 +421,20 @@ impl View {
     }
 }
 
+impl Columns {
+    /// `Σ a_j ln |offset + shift_j|` and `Σ a_j arg(offset + shift_j)`.
+    #[inline]
+    fn ln_product(&self, x: f64, y: f64) -> (f64, f64) {
+        let (mut ln, mut phase) = (0.0, 0.0);
+        for (shift, a) in self.shifts.iter().zip(&self.exponents) {
+            let re = x + shift;
+            ln += a * ln_positive((re * re + y * y).max(1e-300));
+            phase += a * argument_upper(re, y);
+        }
+        (0.5 * ln, phase)
+    }
+}
+
 /// End of a panel on the ray from the anchor, that starts at distance `start` and aims at `target`.
 fn panel_end(view: &View, direction: Complex64, start: f64, target: f64) -> f64 {
     let nearest = if start == 0.0 {
@@ -407,8 +445,7 @@ fn panel_end(view: &View, direction: Complex64, start: f64, target: f64) -> f64 
     let mut end = (start + GROWTH * nearest).min(target);
     // A singular point ahead: keep it at least a third of the panel's length away.
     for _ in 0..60 {
-        let ahead =
-            view.singular().map(|f| (direction * end + f.shift).norm()).fold(f64::INFINITY, f64::min);
+        let ahead = view.singular().map(|f| (direction * end + f.shift).norm()).fold(f64::INFINITY, f64::min);
         if 3.0 * ahead >= end - start {
             break;
         }
@@ -486,8 +523,8 @@ mod tests {
     fn segment_is_the_difference_of_two_integrals() {
         let p = product(&[0.0, 1.0, 3.0, 3.5], &[-0.5, 0.3, 0.5, -0.8]);
         let (a, b) = (Complex64::new(0.2, 0.1), Complex64::new(-1.0, 2.0));
-        let whole = p.integral(HalfPlanePoint::new(1, b)).value()
-            - p.integral(HalfPlanePoint::new(1, a)).value();
+        let whole =
+            p.integral(HalfPlanePoint::new(1, b)).value() - p.integral(HalfPlanePoint::new(1, a)).value();
         let direct = p.segment(1, a, b).value();
         assert!((whole - direct).norm() < 1e-13 * whole.norm(), "{whole} {direct}");
     }

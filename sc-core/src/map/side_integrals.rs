@@ -210,7 +210,11 @@ fn add_panel(
     if want_derivatives {
         for (k, &source) in work.source.iter().enumerate() {
             let b = factor * work.references[k] * work.nearness[k];
-            if source < behind.len() { out.behind[source] += b } else { out.ahead[source - behind.len()] += b }
+            if source < behind.len() {
+                out.behind[source] += b
+            } else {
+                out.ahead[source - behind.len()] += b
+            }
         }
         for (b, p) in out.behind.iter_mut().zip(behind) {
             if p.ln_distance - panel.ln_end > FAR {
@@ -292,8 +296,11 @@ fn outward(
     let mut work = Active::with_capacity(behind.len() + ahead.len());
     let a = line_rules.exponents[anchor];
     let singular = a != 0.0;
-    let closest =
-        if singular { behind.iter().map(|p| p.ln_distance).fold(f64::INFINITY, f64::min) } else { nearest_behind };
+    let closest = if singular {
+        behind.iter().map(|p| p.ln_distance).fold(f64::INFINITY, f64::min)
+    } else {
+        nearest_behind
+    };
     let growth_ln = GROWTH.ln();
     let mut end = (closest + growth_ln).min(ln_end);
     let first = Panel { ln_end: end, start: 0.0, rule: &line_rules.at_point[anchor], self_exponent: 0.0 };
@@ -410,16 +417,17 @@ fn one_side(line: &GapLine, rules: &RuleSet, side: usize, want_derivatives: bool
         let (l, r) = ((near_left - y).exp(), (near_right - y).exp());
         if l.is_infinite() && r.is_infinite() { 1.0 } else { (0.5 * (1.0 + (r - l))).clamp(0.0, 1.0) }
     };
-    let half = |near_end: usize, far_end: usize, behind: &[usize], ahead: &[usize], nearest: f64, part: f64| {
-        let (d_near, d_far) =
-            if near_end == side { (&from_left, &from_right) } else { (&from_right, &from_left) };
-        let behind: Vec<Seen> = behind.iter().map(|&j| seen(rules, j, d_near[j], d_near[j])).collect();
-        let mut beyond: Vec<Seen> = ahead.iter().map(|&j| seen(rules, j, d_near[j], d_far[j])).collect();
-        if rules.exponents[far_end] != 0.0 {
-            beyond.push(seen(rules, far_end, y, f64::NEG_INFINITY));
-        }
-        outward(rules, near_end, &behind, &beyond, nearest, y + part.ln(), want_derivatives)
-    };
+    let half =
+        |near_end: usize, far_end: usize, behind: &[usize], ahead: &[usize], nearest: f64, part: f64| {
+            let (d_near, d_far) =
+                if near_end == side { (&from_left, &from_right) } else { (&from_right, &from_left) };
+            let behind: Vec<Seen> = behind.iter().map(|&j| seen(rules, j, d_near[j], d_near[j])).collect();
+            let mut beyond: Vec<Seen> = ahead.iter().map(|&j| seen(rules, j, d_near[j], d_far[j])).collect();
+            if rules.exponents[far_end] != 0.0 {
+                beyond.push(seen(rules, far_end, y, f64::NEG_INFINITY));
+            }
+            outward(rules, near_end, &behind, &beyond, nearest, y + part.ln(), want_derivatives)
+        };
     let left = (meeting > 0.0).then(|| half(side, side + 1, &around.left, &around.right, near_left, meeting));
     let right =
         (meeting < 1.0).then(|| half(side + 1, side, &around.right, &around.left, near_right, 1.0 - meeting));

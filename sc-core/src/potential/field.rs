@@ -23,7 +23,9 @@ pub enum FieldError {
     #[error(transparent)]
     Rule(#[from] RuleError),
     /// The system for the potential differences is singular.
-    #[error("the potential differences between {electrodes} held parts do not determine the flow between them")]
+    #[error(
+        "the potential differences between {electrodes} held parts do not determine the flow between them"
+    )]
     Singular {
         /// Number of separate held parts.
         electrodes: usize,
@@ -222,12 +224,16 @@ impl FieldBasis {
             .map(|(c, term)| {
                 // φ = (jump/π) arg(ζ − c): the value on the left less that on the right; at infinity the other way
                 // round, for there the side that leaves comes from −∞.
-                let jump = if *c < n - 1 { value(c + n - 1) - value(*c) } else { value(*c) - value(c + n - 1) };
+                let jump =
+                    if *c < n - 1 { value(c + n - 1) - value(*c) } else { value(*c) - value(c + n - 1) };
                 if self.arcs.gaps.is_empty() {
                     return jump / PI;
                 }
                 let residue = if *c < n - 1 {
-                    term.product.coefficient(self.fine_of[*c]).times(-term.ln_norm, Complex64::new(1.0, 0.0)).value()
+                    term.product
+                        .coefficient(self.fine_of[*c])
+                        .times(-term.ln_norm, Complex64::new(1.0, 0.0))
+                        .value()
                 } else {
                     Complex64::new((-term.ln_norm).exp(), 0.0)
                 };
@@ -280,7 +286,10 @@ impl FieldBasis {
                 if t.ln[i] == f64::INFINITY {
                     // Next to a pole: the sign of the divergence is that of the coefficient and the phase.
                     let phase = quarter_turns(t.quarter + t.turns[i]) * c;
-                    return Complex64::new(0.0, if phase.im > 0.0 { f64::INFINITY } else { f64::NEG_INFINITY });
+                    return Complex64::new(
+                        0.0,
+                        if phase.im > 0.0 { f64::INFINITY } else { f64::NEG_INFINITY },
+                    );
                 }
                 sum += t.over_gap(i) * c;
             }
@@ -406,7 +415,8 @@ impl FieldBasis {
         let pole = |p: HalfPlanePoint| self.is_pole(p.anchor) && p.ln_offset.re == f64::NEG_INFINITY;
         if pole(p) || pole(q) {
             let at = if pole(p) { p.anchor } else { q.anchor };
-            let sign: f64 = self.terms(field).filter(|(_, t)| t.product.exponent(at) <= -1.0).map(|(c, _)| c).sum();
+            let sign: f64 =
+                self.terms(field).filter(|(_, t)| t.product.exponent(at) <= -1.0).map(|(c, _)| c).sum();
             return Complex64::new(0.0, if sign < 0.0 { f64::INFINITY } else { f64::NEG_INFINITY });
         }
         if p.anchor == q.anchor {
@@ -426,10 +436,10 @@ impl FieldBasis {
 
     /// Coefficient of `W'` at infinity, `W' ≈ B ζ^p`: every product has the coefficient 1 there.
     pub(crate) fn coefficient_at_infinity(&self, field: &Field) -> Scaled {
-        Scaled::sum(self.terms(field).map(|(c, t)| Scaled {
-            ln_scale: -t.ln_norm,
-            mantissa: quarter_turns(t.quarter) * c,
-        }))
+        Scaled::sum(
+            self.terms(field)
+                .map(|(c, t)| Scaled { ln_scale: -t.ln_norm, mantissa: quarter_turns(t.quarter) * c }),
+        )
     }
 
     /// Coefficient of the leading power of `W'` at a prevertex: `W' ≈ B (ζ − x_j)^b`.

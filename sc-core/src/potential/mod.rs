@@ -5,7 +5,7 @@ mod elliptic;
 mod field;
 mod section;
 
-pub use elliptic::{EllipticError, complete_k, conductance_of_cross_ratio};
 pub(crate) use arcs::Arcs;
+pub use elliptic::{EllipticError, complete_k, conductance_of_cross_ratio};
 pub(crate) use field::{Field, FieldBasis, FieldError};
 pub use section::{Section, SectionFault, SectionWarning};

@@ -239,10 +239,7 @@ mod tests {
     fn all_faults_are_reported_at_once() {
         let faults = Section::new(square(), &[Some(0), None, Some(5), None], &[f64::NAN, 2.0]).unwrap_err();
         assert_eq!(faults.len(), 3, "{faults:?}");
-        assert_eq!(
-            Section::new(square(), &[None; 4], &[]).unwrap_err(),
-            vec![SectionFault::NothingHeld]
-        );
+        assert_eq!(Section::new(square(), &[None; 4], &[]).unwrap_err(), vec![SectionFault::NothingHeld]);
     }
 
     #[test]

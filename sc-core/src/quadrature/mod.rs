@@ -2,8 +2,8 @@
 //!
 //! Nothing here knows of polygons, prevertices or potentials.
 
+mod elementary;
 mod gauss_jacobi;
-mod logarithm;
 
+pub(crate) use elementary::{argument_upper, ln_positive};
 pub use gauss_jacobi::{Rule, RuleError};
-pub(crate) use logarithm::ln_positive;

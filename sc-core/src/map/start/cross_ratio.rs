@@ -135,8 +135,7 @@ impl CrossRatioStart {
                 let ln_r = if p.c == infinity { rho } else { rho + ln_length[p.ca] - ln_length[p.bc] };
                 // ln r/(1+r) and ln 1/(1+r) without overflow.
                 let near = -((-ln_r.abs()).exp().ln_1p());
-                let (toward_a, toward_b) =
-                    if ln_r > 0.0 { (near, near - ln_r) } else { (near + ln_r, near) };
+                let (toward_a, toward_b) = if ln_r > 0.0 { (near, near - ln_r) } else { (near + ln_r, near) };
                 (ln_length[p.ab] + toward_a, ln_length[p.ab] + toward_b)
             };
             ln_length[p.ad] = ad;

@@ -103,7 +103,9 @@ fn long_sides(corners: &[Corner], triangles: &Triangles) -> Vec<bool> {
     let key = |p: Point, q: Point| [p.re, p.im, q.re, q.im].map(|v| (v + 0.0).to_bits());
     let sides: HashMap<_, _> = (0..n).map(|k| (key(corners[k].at, corners[(k + 1) % n].at), k)).collect();
     for k in 0..n {
-        if long[k] && let Some(&twin) = sides.get(&key(corners[(k + 1) % n].at, corners[k].at)) {
+        if long[k]
+            && let Some(&twin) = sides.get(&key(corners[(k + 1) % n].at, corners[k].at))
+        {
             long[twin] = true;
         }
     }
@@ -131,9 +133,8 @@ mod tests {
 
     #[test]
     fn a_square_is_not_split_and_a_long_rectangle_is() {
-        let rectangle = |a: f64| {
-            [(0.0, 0.0), (a, 0.0), (a, 1.0), (0.0, 1.0)].map(|(x, y)| Point::new(x, y)).to_vec()
-        };
+        let rectangle =
+            |a: f64| [(0.0, 0.0), (a, 0.0), (a, 1.0), (0.0, 1.0)].map(|(x, y)| Point::new(x, y)).to_vec();
         assert_eq!(split_sides(&rectangle(1.0), &[0.5; 4], 3.0).unwrap().corners.len(), 4);
         let long = split_sides(&rectangle(20.0), &[0.5; 4], 3.0).unwrap();
         assert!(long.corners.len() > 10 && long.corners.len() < 60, "{}", long.corners.len());

@@ -60,9 +60,10 @@ pub(crate) fn triangulate(corners: &[Point]) -> Result<Triangles, StartError> {
     edges.sort_unstable();
     edges.dedup();
     let mut conflict = false;
-    let cdt =
-        ConstrainedDelaunayTriangulation::<Point2<f64>>::try_bulk_load_cdt(points, edges, |_| conflict = true)
-            .map_err(|_| fault("a coordinate is outside the range that exact predicates can hold"))?;
+    let cdt = ConstrainedDelaunayTriangulation::<Point2<f64>>::try_bulk_load_cdt(points, edges, |_| {
+        conflict = true
+    })
+    .map_err(|_| fault("a coordinate is outside the range that exact predicates can hold"))?;
     if conflict {
         return Err(fault("two sides cross"));
     }
@@ -77,7 +78,8 @@ pub(crate) fn triangulate(corners: &[Point]) -> Result<Triangles, StartError> {
             .ok_or(fault("a side is missing, so another one overlaps it"))?;
         let mut edge = first;
         for turn in 0..=3 * n {
-            let face = edge.face().as_inner().ok_or(fault("the interior is not on the left of every side"))?;
+            let face =
+                edge.face().as_inner().ok_or(fault("the interior is not on the left of every side"))?;
             let f = face.fix().index();
             if turn == 0 {
                 side_face[k] = f;
@@ -131,8 +133,9 @@ mod tests {
 
     #[test]
     fn l_shape_has_four_triangles() {
-        let t = triangulate(&points(&[(1.0, 2.0), (0.0, 2.0), (0.0, 0.0), (2.0, 0.0), (2.0, 1.0), (1.0, 1.0)]))
-            .unwrap();
+        let t =
+            triangulate(&points(&[(1.0, 2.0), (0.0, 2.0), (0.0, 0.0), (2.0, 0.0), (2.0, 1.0), (1.0, 1.0)]))
+                .unwrap();
         assert_eq!(t.corners.len(), 4);
     }
 

@@ -1,4 +1,6 @@
-//! A logarithm without branches, so that loops over it are vectorised by the compiler.
+//! A logarithm and an argument without branches, so that loops over them are vectorised by the compiler.
+
+use std::f64::consts::{FRAC_PI_2, FRAC_PI_4, PI};
 
 /// Computes `ln x` for a positive normal `x`. Zero, negative, subnormal, infinite or NaN arguments give a
 /// finite but meaningless value: the caller keeps them out.
@@ -37,9 +39,59 @@ pub(crate) fn ln_positive(x: f64) -> f64 {
     s * (half_square + r) + k * LN2_LO - half_square + f + k * LN2_HI
 }
 
+/// Computes `arg(x + iy)` in `[0, π]` for `y ≥ 0`, not both zero.
+///
+/// # Accuracy
+/// Below 2.5 ε of π/2 (tested against the standard library).
+///
+/// # Source
+/// Reduction to `|u| ≤ tan(π/8)` and a rational approximation after Moshier, *Methods and Programs for Mathematical
+/// Functions* (1989), coefficients from memory, confirmed by the test.
+#[inline(always)]
+pub(crate) fn argument_upper(x: f64, y: f64) -> f64 {
+    const TAN_PI_8: f64 = 0.414_213_562_373_095_05;
+    let ax = x.abs();
+    let (small, large) = if y > ax { (ax, y) } else { (y, ax) };
+    let steep = small > TAN_PI_8 * large;
+    // atan(t) = π/4 + atan((t − 1)/(t + 1))
+    let u = if steep { (small - large) / (small + large) } else { small / large };
+    let base = if steep { FRAC_PI_4 } else { 0.0 };
+    let z = u * u;
+    let p = (((-8.750_608_600_031_904_122_785e-1 * z - 1.615_753_718_733_365_076_637e1) * z
+        - 7.500_855_792_314_704_667_340e1)
+        * z
+        - 1.228_866_684_490_136_173_410e2)
+        * z
+        - 6.485_021_904_942_025_371_773e1;
+    let q = ((((z + 2.485_846_490_142_306_297_962e1) * z + 1.650_270_098_316_988_542_046e2) * z
+        + 4.328_810_604_912_902_668_951e2)
+        * z
+        + 4.853_903_996_359_136_964_868e2)
+        * z
+        + 1.945_506_571_482_613_964_425e2;
+    let a = base + (u + u * z * p / q);
+    let first = if y > ax { FRAC_PI_2 - a } else { a };
+    if x < 0.0 { PI - first } else { first }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn argument_agrees_with_the_standard_library() {
+        let mut worst = 0.0_f64;
+        for i in 0..=100_000 {
+            let angle = PI * f64::from(i) / 100_000.0;
+            for r in [1e-100, 1.0, 1e100] {
+                let (x, y) = (r * angle.cos(), (r * angle.sin()).max(0.0));
+                worst = worst.max((argument_upper(x, y) - y.atan2(x)).abs());
+            }
+        }
+        assert!(worst < 2.5 * f64::EPSILON * FRAC_PI_2, "worst {worst:e}");
+        // Small angles keep relative accuracy.
+        assert!((argument_upper(1.0, 1e-200) - 1e-200).abs() < 1e-215);
+    }
 
     #[test]
     fn logarithm_agrees_with_the_standard_library_to_an_ulp() {
