@@ -1,7 +1,7 @@
 //! The map itself: `f(ζ) = w_k + C ∫_{x_k}^{ζ} ∏ (ζ − x_j)^{α_j − 1} dζ`, its derivative, and places on the sides.
 
 use super::gap_line::GapLine;
-use super::half_plane::{Effort, MapError, Plan, Solved, choose_infinity, solve_parameters};
+use super::half_plane::{Effort, MapError, Plan, Solved, choose_infinity, rotation, solve_parameters};
 use super::parameter_problem::IterationObserver;
 use super::power_product::{HalfPlanePoint, PowerProduct, Scaled};
 use super::side_integrals::{RuleSet, side_integrals};
@@ -78,13 +78,8 @@ impl HalfPlaneMap {
     /// Side lengths fit to a relative 1e-13 or better; 300 of 300 polygons of the robustness set with up to 50
     /// sides and 230 decades of crowding converged, to 4e-14 at worst.
     pub fn solve(outline: &Outline, options: &MapOptions) -> Result<HalfPlaneMap, MapError> {
-        let corners: Vec<Point> = (0..outline.n()).filter_map(|k| outline.point(k)).collect();
-        if corners.len() != outline.n() {
-            return Err(MapError::Unbounded);
-        }
         let warm = options.warm_start.as_ref();
-        let at_infinity =
-            warm.map_or_else(|| choose_infinity(&corners, outline.alpha(), options.infinity_rank), |w| w.0);
+        let at_infinity = warm.map_or_else(|| choose_infinity(outline, options.infinity_rank), |w| w.0);
         let plan = Plan {
             at_infinity,
             parts: options.split,
@@ -94,7 +89,7 @@ impl HalfPlaneMap {
             warm_start: warm.map(|w| w.1.clone()),
             observer: options.observer.clone(),
         };
-        let solved = solve_parameters(&corners, outline.alpha(), &plan)?;
+        let solved = solve_parameters(outline, &plan)?;
         Self::from_parameters(outline, at_infinity, solved)
     }
 
@@ -111,18 +106,11 @@ impl HalfPlaneMap {
             exponents,
             product,
             ln_scale: solved.ln_scale,
-            rotation: Complex64::new(1.0, 0.0),
+            rotation: rotation(outline, at_infinity),
             half_lengths: Vec::new(),
             rms: solved.rms,
             effort: solved.effort,
         };
-        // arg C from the longest side: on gap k the product has the phase π Σ_{j>k} (α_j − 1).
-        let longest =
-            (0..n).max_by(|&a, &b| map.length(a).total_cmp(&map.length(b)).then(b.cmp(&a))).unwrap_or(0);
-        let phase = std::f64::consts::PI * map.exponents.iter().skip(longest + 1).sum::<f64>();
-        let phase =
-            if longest == n - 1 { std::f64::consts::PI * map.exponents.iter().sum::<f64>() } else { phase };
-        map.rotation = outline.side_direction(map.vertex_of(longest)) * Complex64::from_polar(1.0, -phase);
         map.half_lengths = (0..n)
             .map(|k| {
                 if k + 2 < n {

@@ -65,11 +65,22 @@ impl GapLine {
         ln_sum(&self.log_gaps[a.min(b)..a.max(b)])
     }
 
-    /// The line without the points that `keep` refuses; gaps of dropped points are merged, those outside
-    /// the first and last kept point go.
-    pub fn merged(&self, keep: impl Fn(usize) -> bool) -> GapLine {
-        let kept: Vec<usize> = (0..self.n_points()).filter(|&j| keep(j)).collect();
-        GapLine { log_gaps: kept.windows(2).map(|w| self.ln_distance(w[0], w[1])).collect() }
+    /// A line with one point for each group of points of this one, in order: a single point, or the middle of a
+    /// cluster. Groups are non-empty and ascending; points outside all groups are dropped, their gaps merged.
+    pub fn gathered(&self, groups: &[Vec<usize>]) -> GapLine {
+        // Half the width of a cluster on either side of its middle.
+        let half = |g: &[usize]| match g {
+            [first, .., last] => self.ln_distance(*first, *last) - std::f64::consts::LN_2,
+            _ => f64::NEG_INFINITY,
+        };
+        let log_gaps = groups
+            .windows(2)
+            .map(|w| match (w[0].last(), w[1].first()) {
+                (Some(&a), Some(&b)) => ln_add(ln_add(self.ln_distance(a, b), half(&w[0])), half(&w[1])),
+                _ => 0.0,
+            })
+            .collect();
+        GapLine { log_gaps }
     }
 
     /// Smallest and largest `y`.
@@ -107,7 +118,9 @@ mod tests {
             assert!((got - want).abs() < 1e-14);
         }
         assert!((line.ln_distance(0, 3).exp() - 10.0).abs() < 1e-13);
-        assert_eq!(line.merged(|j| j != 1).n_points(), 3);
+        let gathered = line.gathered(&[vec![0], vec![1, 2], vec![3]]);
+        assert!((gathered.log_gaps()[0].exp() - 3.5).abs() < 1e-13);
+        assert!((gathered.log_gaps()[1].exp() - 6.5).abs() < 1e-13);
     }
 
     #[test]

@@ -1,11 +1,13 @@
 //! From an outline to the gaps of its half-plane map: start, coarse iteration, final iteration.
 
 use super::gap_line::GapLine;
-use super::parameter_problem::{Fit, FitOptions, IterationObserver, SideLengths, StopReason, fit};
+use super::equations::{End, Equations};
+use super::parameter_problem::{Fit, FitOptions, IterationObserver, StopReason, fit};
 use super::side_integrals::RuleSet;
-use super::start::{CrossRatioStart, StartError, split_sides};
-use crate::outline::Point;
+use super::start::{CrossRatioStart, Source, StartError, split_sides, truncate};
+use crate::outline::{Outline, Point};
 use crate::quadrature::RuleError;
+use num_complex::Complex64;
 use thiserror::Error;
 
 /// Nodes a panel while the residual is still large.
@@ -21,9 +23,6 @@ pub enum MapError {
     /// An interior angle leaves no integrable power.
     #[error(transparent)]
     Rule(#[from] RuleError),
-    /// The outline reaches infinity, which is not yet answered.
-    #[error("the outline reaches infinity; only bounded sections are mapped")]
-    Unbounded,
     /// The iteration ended without a map that fits.
     #[error("the map did not converge: {stop} after {iterations} iterations, side lengths off by {rms:.1e}")]
     NotConverged {
@@ -82,35 +81,48 @@ const SWEEP_ENOUGH: f64 = 0.3;
 /// robustness set the first stage has always been enough.
 const STAGES: [(f64, u64, u64); 2] = [(3e-2, 30, 12), (1e-6, 60, 40)];
 
-pub(crate) fn solve_parameters(outline: &[Point], alpha: &[f64], plan: &Plan) -> Result<Solved, MapError> {
-    let n = outline.len();
+pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved, MapError> {
+    let n = outline.n();
     let order = |k: usize| (plan.at_infinity + 1 + k) % n;
-    let exponents: Vec<f64> = (0..n - 1).map(|k| alpha[order(k)] - 1.0).collect();
-    let lengths: Vec<f64> = (0..n)
+    let exponents: Vec<f64> = (0..n - 1).map(|k| outline.alpha()[order(k)] - 1.0).collect();
+    if n == 2 {
+        // A half-plane or a wedge: nothing is to be found but a scale, which is free.
+        return Ok(Solved::trivial());
+    }
+    let lengths: Vec<Option<f64>> = (0..n)
         .map(|k| {
-            let (a, b) = (outline[order(k)], outline[order(k + 1)]);
-            (b - a).norm().ln() + plan.disturbance * disturbance(k) * rounding(a, b)
+            let (a, b) = (outline.point(order(k))?, outline.point(order(k + 1))?);
+            Some((b - a).norm().ln() + plan.disturbance * disturbance(k) * rounding(a, b))
         })
         .collect();
+    let ends = ends(outline, plan.at_infinity);
+    let rotation = rotation(outline, plan.at_infinity);
     let fine = RuleSet::new(&exponents, plan.nodes)?;
-    let finish = |start: &GapLine, limit: u64| {
+    let finish = |start: &GapLine, ln_scale: Option<f64>, limit: u64| {
         let options = FitOptions {
             target_rms: plan.target_rms,
             max_iterations: limit,
             observer: plan.observer.clone(),
         };
-        fit(SideLengths { rules: &fine, ln_lengths: &lengths }, start, &options)
+        let equations = Equations { rules: &fine, ln_lengths: &lengths, ends: &ends, rotation };
+        fit(equations, start, ln_scale, &options)
     };
     if let Some(line) = plan.warm_start.as_ref().filter(|line| line.n_points() == n - 1) {
-        let done = finish(line, 12);
+        let done = finish(line, None, 12);
         if done.rms <= ACCEPT_RMS {
             let iterations = done.iterations;
             return Ok(Solved::new(done, n, iterations));
         }
     }
-    let split = split_sides(outline, alpha, plan.parts)?;
+    let cut = truncate(outline);
+    let split = split_sides(&cut.corners, &cut.alpha, plan.parts)?;
     let pieces = split.corners.len();
-    let at_infinity = split.original.iter().position(|&o| o == Some(plan.at_infinity)).unwrap_or(pieces - 1);
+    // What each corner of the split outline stands for.
+    let source: Vec<Option<Source>> = split.original.iter().map(|o| o.map(|o| cut.source[o])).collect();
+    let is_infinity = |s: &Option<Source>| {
+        *s == Some(Source::Vertex(plan.at_infinity)) || *s == Some(Source::Cut(plan.at_infinity))
+    };
+    let at_infinity = source.iter().position(is_infinity).unwrap_or(pieces - 1);
     let mut start = CrossRatioStart::new(&split, at_infinity);
     let coarse = RuleSet::new(start.exponents(), COARSE_NODES)?;
     for _ in 0..MAX_SWEEPS {
@@ -118,24 +130,42 @@ pub(crate) fn solve_parameters(outline: &[Point], alpha: &[f64], plan: &Plan) ->
             break;
         }
     }
-    let split_lengths = start.ln_lengths();
-    let keep = |j: usize| split.original[(at_infinity + 1 + j) % pieces].is_some();
+    let split_lengths: Vec<Option<f64>> = start.ln_lengths().into_iter().map(Some).collect();
+    // Line indices of the split outline for each vertex but the one at infinity: one, or those of a cut.
+    let places: Vec<Vec<usize>> = (0..n - 1)
+        .map(|k| {
+            let vertex = order(k);
+            let stands = |s: &Option<Source>| {
+                *s == Some(Source::Vertex(vertex)) || *s == Some(Source::Cut(vertex))
+            };
+            (0..pieces - 1).filter(|j| stands(&source[(at_infinity + 1 + j) % pieces])).collect()
+        })
+        .collect();
     let mut iterations = 0;
     let mut line = start.line();
     let mut best: Option<Fit> = None;
     // Stage by stage the split system is solved further before the added vertices are dropped.
     for (coarse_target, coarse_limit, fine_limit) in STAGES {
-        if pieces > n {
+        let mut ln_scale = None;
+        if pieces > n || !ends.is_empty() {
             let options = FitOptions {
                 target_rms: coarse_target,
                 max_iterations: coarse_limit,
                 observer: plan.observer.clone(),
             };
-            let rough = fit(SideLengths { rules: &coarse, ln_lengths: &split_lengths }, &line, &options);
+            let equations = Equations {
+                rules: &coarse,
+                ln_lengths: &split_lengths,
+                ends: &[],
+                rotation: Complex64::new(1.0, 0.0),
+            };
+            let rough = fit(equations, &line, None, &options);
             iterations += rough.iterations;
             line = rough.line;
+            // With few finite sides the scale has to come from the cut outline.
+            ln_scale = (!outline.is_bounded()).then_some(rough.ln_scale);
         }
-        let done = finish(&line.merged(keep), fine_limit);
+        let done = finish(&line.gathered(&places), ln_scale, fine_limit);
         iterations += done.iterations;
         let good = done.rms <= ACCEPT_RMS;
         if best.as_ref().is_none_or(|b| done.rms < b.rms) {
@@ -155,7 +185,46 @@ pub(crate) fn solve_parameters(outline: &[Point], alpha: &[f64], plan: &Plan) ->
     }
 }
 
+/// The equations' view of the vertices at infinity other than the one at `ζ = ∞`.
+fn ends(outline: &Outline, at_infinity: usize) -> Vec<End> {
+    let n = outline.n();
+    (0..n - 1)
+        .filter_map(|point| {
+            let vertex = (at_infinity + 1 + point) % n;
+            if outline.point(vertex).is_some() {
+                return None;
+            }
+            let step = outline.point(vertex + 1)? - outline.point(vertex + n - 1)?;
+            let heading = outline.side_direction(vertex + n - 1);
+            let width = (step * heading.conj()).im.abs();
+            let is_channel = outline.alpha()[vertex] == 0.0;
+            Some(End { point, step, channel: is_channel.then_some((heading, width)) })
+        })
+        .collect()
+}
+
+/// `C/|C|`, from the longest side: on side `k` the product has the phase `π Σ_{j>k} (α_j − 1)`.
+pub(crate) fn rotation(outline: &Outline, at_infinity: usize) -> Complex64 {
+    let n = outline.n();
+    let order = |k: usize| (at_infinity + 1 + k) % n;
+    let length = |k: usize| outline.side_length(order(k)).unwrap_or(f64::INFINITY);
+    let longest = (0..n).max_by(|&a, &b| length(a).total_cmp(&length(b)).then(b.cmp(&a))).unwrap_or(0);
+    // Side n − 1 comes from −∞, left of all points.
+    let first = if longest == n - 1 { 0 } else { longest + 1 };
+    let phase: f64 = (first..n - 1).map(|k| outline.alpha()[order(k)] - 1.0).sum();
+    outline.side_direction(order(longest)) * Complex64::from_polar(1.0, -std::f64::consts::PI * phase)
+}
+
 impl Solved {
+    fn trivial() -> Solved {
+        Solved {
+            line: GapLine::new(Vec::new()),
+            ln_scale: 0.0,
+            rms: 0.0,
+            effort: Effort { pieces: 2, iterations: 0, stop: StopReason::ToleranceReached },
+        }
+    }
+
     fn new(done: Fit, pieces: usize, iterations: u64) -> Solved {
         Solved {
             line: done.line,
@@ -176,20 +245,33 @@ fn disturbance(k: usize) -> f64 {
     2.0 * ((k as f64 + 1.0) * 0.618_033_988_749_894_9).fract() - 1.0
 }
 
-/// The vertex that is best sent to infinity: neither flat nor a tip, angle near a right or re-entrant right angle,
-/// with long sides beside it. `rank` 0 is the best, 1 the next, for an independent second solution.
-pub(crate) fn choose_infinity(outline: &[Point], alpha: &[f64], rank: usize) -> usize {
-    let n = outline.len();
-    let size = (0..n).map(|k| (outline[(k + 1) % n] - outline[k]).norm()).fold(0.0, f64::max);
-    let mut order: Vec<usize> = (0..n).collect();
-    let score = |k: usize| {
-        let a = alpha[k];
-        let turning = (a - 1.0).abs().min(1.0 - (a - 1.0).abs()).max(0.0);
-        let beside =
-            (outline[(k + 1) % n] - outline[k]).norm().min((outline[k] - outline[(k + n - 1) % n]).norm());
-        turning * (beside / size).powf(0.25)
+/// The vertex that is best sent to infinity. In a bounded outline: neither flat nor a tip, angle near a right or
+/// re-entrant right angle, with long sides beside it. In an unbounded one: the vertex at infinity with the most
+/// negative angle. `rank` 0 is the best, 1 the next, for an independent second solution.
+pub(crate) fn choose_infinity(outline: &Outline, rank: usize) -> usize {
+    let n = outline.n();
+    let alpha = outline.alpha();
+    let order: Vec<usize> = if outline.is_bounded() {
+        let length = |k: usize| outline.side_length(k).unwrap_or(f64::INFINITY);
+        let size = (0..n).map(length).fold(0.0, f64::max);
+        let score = |k: usize| {
+            let turning = (alpha[k] - 1.0).abs().min(1.0 - (alpha[k] - 1.0).abs()).max(0.0);
+            turning * (length(k).min(length(k + n - 1)) / size).powf(0.25)
+        };
+        let mut usable: Vec<usize> =
+            (0..n).filter(|&k| (alpha[k] - 1.0).abs() > 0.05 && alpha[k] < 1.95).collect();
+        if usable.is_empty() {
+            usable = (0..n).collect();
+        }
+        usable.sort_by(|&a, &b| score(b).total_cmp(&score(a)).then(a.cmp(&b)));
+        usable
+    } else {
+        let mut ends: Vec<usize> = (0..n).filter(|&k| outline.point(k).is_none()).collect();
+        ends.sort_by(|&a, &b| alpha[a].total_cmp(&alpha[b]).then(a.cmp(&b)));
+        // Another end serves as a second choice only if it is as wide.
+        let widest = ends.first().map_or(0.0, |&k| alpha[k]);
+        ends.retain(|&k| alpha[k] <= widest + 1e-12);
+        ends
     };
-    order.sort_by(|&a, &b| score(b).total_cmp(&score(a)).then(a.cmp(&b)));
-    let usable = order.iter().filter(|&&k| (alpha[k] - 1.0).abs() > 0.05 && alpha[k] < 1.95).count().max(1);
-    order[rank.min(usable - 1)]
+    order[rank.min(order.len() - 1)]
 }

@@ -1,6 +1,7 @@
 //! The conformal map from the upper half-plane to the section.
 
 mod conformal;
+mod equations;
 mod gap_line;
 mod half_plane;
 mod inverse;
@@ -8,6 +9,7 @@ mod parameter_problem;
 mod power_product;
 mod side_integrals;
 mod start;
+mod step;
 
 pub use conformal::{HalfPlaneMap, MapOptions};
 pub use gap_line::GapLine;

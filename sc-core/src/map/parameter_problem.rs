@@ -1,12 +1,12 @@
 //! The parameter problem: gaps whose map has sides of the given lengths.
 //!
-//! Unknowns are the log gaps `y`; residuals `r_k = ln I_k(y) − ln |side_k|`, less their mean (the mean is `−ln |C|`),
-//! over *all* sides. The system is overdetermined but consistent, with the one null direction of scaling the gaps.
+//! Unknowns are the log gaps `y` and `ln |C|`; the equations (see [`Equations`]) are those of all finite sides and of
+//! all vertices at infinity. The system is overdetermined but consistent, with the one null direction of scaling the gaps.
 //! Solved by Gauss–Newton steps with Levenberg–Marquardt damping on the normal equations: the residual vanishes at
 //! the solution, so what the normal equations lose in digits they only lose in speed.
 
 use super::gap_line::GapLine;
-use super::side_integrals::{RuleSet, side_integrals};
+use super::equations::{Equations, Evaluation};
 use argmin::core::observers::{Observe, ObserverMode};
 use argmin::core::{
     Error, Executor, IterState, KV, Problem, Solver, State, TerminationReason, TerminationStatus,
@@ -95,38 +95,6 @@ pub(crate) struct Fit {
     pub(crate) stop: StopReason,
 }
 
-/// Lengths to be met; sides in the order of [`side_integrals`].
-pub(crate) struct SideLengths<'a> {
-    pub(crate) rules: &'a RuleSet,
-    pub(crate) ln_lengths: &'a [f64],
-}
-
-/// Residuals (mean removed), the mean, and the centred Jacobian if asked for.
-struct Evaluation {
-    residuals: Vec<f64>,
-    mean: f64,
-    jacobian: Option<DMatrix<f64>>,
-}
-
-impl SideLengths<'_> {
-    fn evaluate(&self, y: &[f64], want_jacobian: bool) -> Evaluation {
-        let line = GapLine::new(y.to_vec());
-        let integrals = side_integrals(&line, self.rules, want_jacobian);
-        let n = self.ln_lengths.len() as f64;
-        let mut residuals: Vec<f64> = integrals.ln.iter().zip(self.ln_lengths).map(|(i, l)| i - l).collect();
-        let mean = residuals.iter().sum::<f64>() / n;
-        residuals.iter_mut().for_each(|r| *r -= mean);
-        let jacobian = integrals.jacobian.map(|mut j| {
-            for mut column in j.column_iter_mut() {
-                let mean = column.sum() / n;
-                column.add_scalar_mut(-mean);
-            }
-            j
-        });
-        Evaluation { residuals, mean, jacobian }
-    }
-}
-
 fn root_mean_square(r: &[f64]) -> f64 {
     (r.iter().map(|v| v * v).sum::<f64>() / r.len() as f64).sqrt()
 }
@@ -139,12 +107,13 @@ pub(crate) struct NormalEquations {
 }
 
 impl NormalEquations {
-    fn new(jacobian: DMatrix<f64>) -> NormalEquations {
+    /// `null` is the direction in which nothing changes: scaling all gaps, with `C` taking it back.
+    fn new(jacobian: DMatrix<f64>, null: &[f64]) -> NormalEquations {
         let mut normal = jacobian.transpose() * &jacobian;
         let n = normal.nrows();
         let scale = (normal.trace() / n as f64).max(1e-300);
-        // Scaling all gaps alike changes nothing: hold the sum of the changes at zero.
-        normal.add_scalar_mut(scale / n as f64);
+        let null = DVector::from_column_slice(null);
+        normal.ger(scale / null.norm_squared(), &null, &null, 1.0);
         NormalEquations { jacobian, normal, scale }
     }
 
@@ -175,33 +144,38 @@ struct DampedGaussNewton {
     damping: f64,
     equations: Option<NormalEquations>,
     factor: Option<Cholesky<f64, Dyn>>,
-    mean: f64,
+    null: Vec<f64>,
     stop: Option<StopReason>,
+}
+
+impl DampedGaussNewton {
+    fn normal_equations(&self, jacobian: Option<DMatrix<f64>>) -> Option<NormalEquations> {
+        jacobian.map(|j| NormalEquations::new(j, &self.null))
+    }
 }
 
 type LineState = IterState<Vec<f64>, (), (), (), Vec<f64>, f64>;
 
-impl<'a> Solver<SideLengths<'a>, LineState> for DampedGaussNewton {
+impl<'a> Solver<Equations<'a>, LineState> for DampedGaussNewton {
     fn name(&self) -> &str {
         "damped Gauss-Newton on log side lengths"
     }
 
     fn init(
         &mut self,
-        problem: &mut Problem<SideLengths<'a>>,
+        problem: &mut Problem<Equations<'a>>,
         mut state: LineState,
     ) -> Result<(LineState, Option<KV>), Error> {
         let y = state.take_param().ok_or_else(|| Error::msg("no starting gaps"))?;
-        let first = problem.problem("evaluations", |p| Ok(p.evaluate(&y, true)))?;
-        self.mean = first.mean;
-        self.equations = first.jacobian.map(NormalEquations::new);
+        let first: Evaluation = problem.problem("evaluations", |p| Ok(p.evaluate(&y, true)))?;
+        self.equations = self.normal_equations(first.jacobian);
         let rms = root_mean_square(&first.residuals);
         Ok((state.param(y).cost(rms).residuals(first.residuals), None))
     }
 
     fn next_iter(
         &mut self,
-        problem: &mut Problem<SideLengths<'a>>,
+        problem: &mut Problem<Equations<'a>>,
         mut state: LineState,
     ) -> Result<(LineState, Option<KV>), Error> {
         let y = state.take_param().ok_or_else(|| Error::msg("no gaps"))?;
@@ -209,7 +183,7 @@ impl<'a> Solver<SideLengths<'a>, LineState> for DampedGaussNewton {
         let rms = state.get_cost();
         if self.equations.is_none() {
             let here = problem.problem("evaluations", |p| Ok(p.evaluate(&y, true)))?;
-            self.equations = here.jacobian.map(NormalEquations::new);
+            self.equations = self.normal_equations(here.jacobian);
             self.factor = None;
         }
         for _ in 0..MAX_RETRIES {
@@ -225,12 +199,11 @@ impl<'a> Solver<SideLengths<'a>, LineState> for DampedGaussNewton {
             let next = problem.problem("evaluations", |p| Ok(p.evaluate(&trial, !chord)))?;
             let next_rms = root_mean_square(&next.residuals);
             if next_rms < rms {
-                self.mean = next.mean;
                 let gain = next_rms / rms;
                 // The damping has to sink below the smallest eigenvalue (1e-6 of the mean is usual) to be of no account.
                 self.damping *= 0.03;
                 if next.jacobian.is_some() {
-                    self.equations = next.jacobian.map(NormalEquations::new);
+                    self.equations = self.normal_equations(next.jacobian);
                 } else if gain < 0.1 {
                     self.factor = Some(factor);
                 } else {
@@ -263,41 +236,32 @@ impl<'a> Solver<SideLengths<'a>, LineState> for DampedGaussNewton {
     }
 }
 
-/// Finds the gaps from a start.
-pub(crate) fn fit(problem: SideLengths<'_>, start: &GapLine, options: &FitOptions) -> Fit {
+/// Finds gaps and scale from a start.
+pub(crate) fn fit(equations: Equations<'_>, start: &GapLine, ln_scale: Option<f64>, options: &FitOptions) -> Fit {
+    let mut first = start.log_gaps().to_vec();
+    let ln_scale = ln_scale.unwrap_or_else(|| equations.matching_scale(start));
+    first.push(ln_scale);
+    let null = equations.null_direction();
     let solver =
-        DampedGaussNewton { damping: FIRST_DAMPING, equations: None, factor: None, mean: 0.0, stop: None };
-    let first = start.log_gaps().to_vec();
-    let mut executor = Executor::new(problem, solver).configure(|state: LineState| {
-        state.param(first).max_iters(options.max_iterations).target_cost(options.target_rms)
+        DampedGaussNewton { damping: FIRST_DAMPING, equations: None, factor: None, null, stop: None };
+    let initial = first.clone();
+    let mut executor = Executor::new(equations, solver).configure(|state: LineState| {
+        state.param(initial).max_iters(options.max_iterations).target_cost(options.target_rms)
     });
     if let Some(observer) = &options.observer {
         executor = executor.add_observer(observer.clone(), ObserverMode::Always);
     }
-    match executor.timer(false).run() {
-        Ok(done) => {
-            let reason = done.state.get_termination_reason().cloned();
-            let stop = match (done.solver.stop, reason) {
-                (Some(stop), _) => stop,
-                (None, Some(TerminationReason::TargetCostReached)) => StopReason::ToleranceReached,
-                _ => StopReason::IterationLimit,
-            };
-            let y = done.state.get_param().cloned().unwrap_or_else(|| start.log_gaps().to_vec());
-            Fit {
-                line: GapLine::new(y),
-                ln_scale: -done.solver.mean,
-                rms: done.state.get_cost(),
-                iterations: done.state.get_iter(),
-                stop,
-            }
-        }
-        // The executor fails only on its own bookkeeping (no parameter set); say so as "no descent".
-        Err(_) => Fit {
-            line: start.clone(),
-            ln_scale: 0.0,
-            rms: f64::INFINITY,
-            iterations: 0,
-            stop: StopReason::NoDescent,
-        },
-    }
+    // The executor fails only on its own bookkeeping (no parameter set); say so as "no descent".
+    let failed = |_| (first.clone(), f64::INFINITY, 0, StopReason::NoDescent);
+    let (mut found, rms, iterations, stop) = executor.timer(false).run().map_or_else(failed, |done| {
+        let stop = match (done.solver.stop, done.state.get_termination_reason()) {
+            (Some(stop), _) => stop,
+            (None, Some(TerminationReason::TargetCostReached)) => StopReason::ToleranceReached,
+            _ => StopReason::IterationLimit,
+        };
+        let found = done.state.get_param().cloned().unwrap_or_else(|| first.clone());
+        (found, done.state.get_cost(), done.state.get_iter(), stop)
+    });
+    let ln_scale = found.pop().unwrap_or(ln_scale);
+    Fit { line: GapLine::new(found), ln_scale, rms, iterations, stop }
 }

@@ -245,21 +245,42 @@ impl PowerProduct {
 
     /// `∫ P dζ` from the anchor to the point, along the straight line. Needs the anchor's exponent above −1.
     pub(crate) fn integral(&self, p: HalfPlanePoint) -> Scaled {
+        let mut sum = Sum::default();
+        let (ln_factor, factor) = self.along_ray(p, |_, value, weight, ln| sum.add(value, weight, ln));
+        sum.total().times(ln_factor, factor)
+    }
+
+    /// `∫ P dζ` along the straight segment between two offsets of one anchor; panels shrink as singular points near.
+    pub(crate) fn segment(&self, anchor: usize, from: Complex64, to: Complex64) -> Scaled {
+        let mut sum = Sum::default();
+        let (ln_factor, factor) =
+            self.along_segment(anchor, from, to, |_, value, weight, ln| sum.add(value, weight, ln));
+        sum.total().times(ln_factor, factor)
+    }
+
+    /// Visits the quadrature nodes of [`PowerProduct::integral`] with (offset, value, weight, `ln` of a factor);
+    /// returns the (logarithmic and complex) factor of the sum.
+    pub(crate) fn along_ray(
+        &self,
+        p: HalfPlanePoint,
+        mut visit: impl FnMut(Complex64, Scaled, f64, f64),
+    ) -> (f64, Complex64) {
         let view = &self.views[p.anchor];
         let ln_r = p.ln_offset.re;
+        let a = view.self_exponent;
+        let angle = p.ln_offset.im;
+        let factor = ((1.0 + a) * view.ln_unit, Complex64::from_polar(1.0, (1.0 + a) * angle));
         if ln_r == f64::NEG_INFINITY {
-            return Scaled { ln_scale: 0.0, mantissa: Complex64::new(0.0, 0.0) };
+            return factor;
         }
         let r = ln_r.exp();
-        let angle = p.ln_offset.im;
         let direction = Complex64::from_polar(1.0, angle);
-        let a = view.self_exponent;
-        let mut sum = Sum::default();
         let mut end = panel_end(view, direction, 0.0, r);
         let ln_end = if end < r { end.ln() } else { ln_r };
         let rule = self.rules.at_point(p.anchor);
         for (t, w) in rule.points() {
-            sum.add(view.others(direction * (t * end)), w, (1.0 + a) * ln_end);
+            let at = direction * (t * end);
+            visit(at, view.others(at), w, (1.0 + a) * ln_end);
         }
         for _ in 0..MAX_PANELS {
             if end >= r {
@@ -271,18 +292,24 @@ impl PowerProduct {
             for (t, w) in self.rules.legendre().points() {
                 let at = start + width * t;
                 let own = if a == 0.0 { 0.0 } else { a * ln_positive(at) };
-                sum.add(view.others(direction * at), w * width, own);
+                let at = direction * at;
+                visit(at, view.others(at), w * width, own);
             }
         }
-        sum.total().times((1.0 + a) * view.ln_unit, Complex64::from_polar(1.0, (1.0 + a) * angle))
+        factor
     }
 
-    /// `∫ P dζ` along the straight segment between two points with one anchor, which must keep its distance from all
-    /// singular points: at least the length of the segment, or more panels are taken.
-    pub(crate) fn segment(&self, anchor: usize, from: Complex64, to: Complex64) -> Scaled {
+    /// Visits the quadrature nodes of [`PowerProduct::segment`].
+    pub(crate) fn along_segment(
+        &self,
+        anchor: usize,
+        from: Complex64,
+        to: Complex64,
+        mut visit: impl FnMut(Complex64, Scaled, f64, f64),
+    ) -> (f64, Complex64) {
         let view = &self.views[anchor];
         let (step, length) = (to - from, (to - from).norm());
-        let mut sum = Sum::default();
+        let own = view.self_exponent;
         let mut start = 0.0;
         for _ in 0..MAX_PANELS {
             if start >= 1.0 || length == 0.0 {
@@ -291,23 +318,32 @@ impl PowerProduct {
             let here = from + step * start;
             let mut end = (start + GROWTH * view.nearest(here) / length).min(1.0);
             let reach = |e: f64| view.nearest(from + step * e) / length;
-            while end - start > 1e-6 && reach(end) * GROWTH < (end - start) * 0.5 {
+            // Down to a part 2^−40 of the segment: nearer singular points lie on it, which callers avoid.
+            for _ in 0..40 {
+                if 3.0 * reach(end) >= end - start {
+                    break;
+                }
                 end = start + 0.5 * (end - start);
             }
             for (t, w) in self.rules.legendre().points() {
                 let at = from + step * (start + (end - start) * t);
                 let value = view.others(at);
-                let own = view.self_exponent;
                 let value = if own == 0.0 {
                     value
                 } else {
                     value.times(own * at.norm().ln(), Complex64::from_polar(1.0, own * argument(at)))
                 };
-                sum.add(value, w * (end - start), 0.0);
+                visit(at, value, w * (end - start), 0.0);
             }
             start = end;
         }
-        sum.total().times((1.0 + view.self_exponent) * view.ln_unit, step)
+        ((1.0 + own) * view.ln_unit, step)
+    }
+
+    /// Signed places of the points other than the anchor, as `(index, x_anchor − x_j)` in anchor units; points too far
+    /// to be counted are left out.
+    pub(crate) fn shifts(&self, anchor: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
+        self.views[anchor].neighbours.iter().map(|n| (n.index, -n.position))
     }
 }
 

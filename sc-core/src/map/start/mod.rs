@@ -5,7 +5,9 @@
 mod cross_ratio;
 mod split;
 mod triangulate;
+mod truncate;
 
 pub(crate) use cross_ratio::CrossRatioStart;
 pub(crate) use split::{SplitOutline, split_sides};
+pub(crate) use truncate::{Source, truncate};
 pub use triangulate::StartError;
