@@ -3,10 +3,12 @@
 mod bounded;
 mod corner;
 mod estimate;
+mod flow_net;
 mod probe;
 mod solution;
 
 pub use bounded::Bounded;
 pub use corner::{Corner, CornerKind};
+pub use flow_net::{FlowNet, FlowNetOptions, NetLine, Terminus, suitable_drops};
 pub use probe::{Gradient, Probe, ProbeError};
 pub use solution::{Matrix, Solution, SolveError, SolveOptions};

@@ -1,0 +1,212 @@
+use super::*;
+use crate::answers::SolveOptions;
+use crate::outline::{Outline, Vertex};
+use crate::potential::Section;
+
+fn solved(points: &[(f64, f64)], electrodes: &[Option<usize>], levels: &[f64]) -> Solution {
+    let vertices: Vec<Vertex> = points.iter().map(|&(x, y)| Vertex::at(x, y)).collect();
+    let outline = Outline::new(&vertices).unwrap().value;
+    let (section, _) = Section::new(outline, electrodes, levels).unwrap();
+    Solution::solve(section, &SolveOptions::default()).unwrap()
+}
+
+fn square() -> Solution {
+    let corners = [(0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0)];
+    solved(&corners, &[None, Some(0), None, Some(1)], &[0.0, 1.0])
+}
+
+fn ell() -> Solution {
+    let corners = [(0.0, 0.0), (2.0, 0.0), (2.0, 1.0), (1.0, 1.0), (1.0, 2.0), (0.0, 2.0)];
+    solved(&corners, &[None, Some(1), None, None, Some(0), None], &[0.0, 1.0])
+}
+
+/// A layer with a floor from x = 4 to 6 and a cutoff wall in its middle; both beds are held.
+fn cutoff() -> Solution {
+    let corners = [
+        (0.0, -3.0),
+        (10.0, -3.0),
+        (10.0, 0.0),
+        (6.0, 0.0),
+        (5.0, 0.0),
+        (5.0, -1.5),
+        (5.0, 0.0),
+        (4.0, 0.0),
+        (0.0, 0.0),
+    ];
+    let mut electrodes = [None; 9];
+    electrodes[2] = Some(0);
+    electrodes[7] = Some(1);
+    solved(&corners, &electrodes, &[3.0, 7.0])
+}
+
+/// Every point of an equipotential has its value at an independent probe, and lies in the section.
+fn assert_on_value(solution: &Solution, net: &FlowNet) {
+    let mut seen = 0;
+    let size = solution.section().outline().size();
+    for line in &net.equipotentials {
+        assert!(line.points.len() > 1, "{line:?}");
+        for &z in &line.points[1..line.points.len() - 1] {
+            let probe = solution.probe(z).unwrap();
+            let off = (probe.potential.value - line.value).abs();
+            assert!(off <= 1e-8 * solution.section().range(), "φ = {} off by {off} at {z}", line.value);
+            seen += 1;
+        }
+    }
+    for line in &net.flow_lines {
+        assert!(line.points.len() > 1, "{line:?}");
+        for &z in &line.points[1..line.points.len() - 1] {
+            let probe = solution.probe(z).unwrap();
+            let off = (probe.stream.value - line.value).abs();
+            assert!(off <= 1e-8 * solution.section().range(), "ψ = {} off by {off} at {z}", line.value);
+            seen += 1;
+        }
+    }
+    for z in net.equipotentials.iter().chain(&net.flow_lines).flat_map(|l| &l.points) {
+        let inside = solution.section().outline().contains(*z);
+        let outside = inside == crate::outline::Containment::Outside;
+        assert!(!outside || solution.section().outline().nearest_boundary(*z).distance < 1e-12 * size, "{z}");
+    }
+    assert!(seen > 0);
+}
+
+fn sides_of(line: &NetLine) -> (usize, usize) {
+    match (line.start, line.end) {
+        (Terminus::Side(a), Terminus::Side(b)) => (a.min(b), a.max(b)),
+        other => panic!("{other:?} for {}", line.value),
+    }
+}
+
+#[test]
+fn the_net_of_a_square_is_straight() {
+    let solution = square();
+    let net = solution.flow_net(&FlowNetOptions::default());
+    assert_eq!((net.equipotentials.len(), net.flow_lines.len()), (9, 9));
+    for line in &net.equipotentials {
+        assert_eq!(sides_of(line), (0, 2));
+        assert!(line.points.iter().all(|z| (z.re - (1.0 - line.value)).abs() < 1e-10), "{line:?}");
+    }
+    for (i, line) in net.flow_lines.iter().enumerate() {
+        assert_eq!(sides_of(line), (1, 3));
+        let y = line.points[0].im;
+        assert!(line.points.iter().all(|z| (z.im - y).abs() < 1e-10), "{line:?}");
+        assert!((y - (1.0 - 0.1 * (i + 1) as f64)).abs() < 1e-10);
+        assert!(!line.beside_part_channel);
+    }
+    assert_on_value(&solution, &net);
+}
+
+#[test]
+fn channels_over_drops_is_the_shape_factor() {
+    for solution in [square(), ell(), cutoff()] {
+        let net = solution.flow_net(&FlowNetOptions { drops: 12, ..FlowNetOptions::default() });
+        let s = solution.shape_factor().unwrap().value;
+        assert!((net.n_channels / net.n_drops as f64 - s).abs() < 1e-14 * s);
+        // Drawn lines agree: one less than the channels, the last of them partial.
+        let drawn = net.flow_lines.len() as f64;
+        assert!(
+            drawn <= net.n_channels && drawn >= net.n_channels - 1.0 - 1e-6,
+            "{drawn} {}",
+            net.n_channels
+        );
+    }
+}
+
+#[test]
+fn lines_of_an_ell_end_where_they_should() {
+    let solution = ell();
+    let net = solution.flow_net(&FlowNetOptions { drops: 11, ..FlowNetOptions::default() });
+    assert_eq!(net.equipotentials.len(), 10);
+    for line in &net.equipotentials {
+        let (a, b) = sides_of(line);
+        assert!([0, 5].contains(&a) || [0, 5].contains(&b), "{a} {b}");
+        assert!([2, 3].contains(&a) || [2, 3].contains(&b), "{a} {b}");
+    }
+    for line in &net.flow_lines {
+        assert_eq!(sides_of(line), (1, 4));
+    }
+    assert_on_value(&solution, &net);
+    let last: Vec<bool> = net.flow_lines.iter().map(|l| l.beside_part_channel).collect();
+    assert_eq!(last.iter().filter(|b| **b).count(), 1);
+}
+
+#[test]
+fn a_line_through_two_corners_of_a_symmetric_ell_is_straight() {
+    let net = ell().flow_net(&FlowNetOptions { drops: 2, ..FlowNetOptions::default() });
+    let [line] = &net.equipotentials[..] else { panic!("{:?}", net.equipotentials) };
+    let (a, b) = (line.points[0], line.points[line.points.len() - 1]);
+    assert!((a - b).norm() > 1.4, "{a} {b}");
+    // In the right-angled corner φ is quadratic: 1e-11 of it is 3e-6 of the distance.
+    assert!(line.points.iter().all(|z| (z.re - z.im).abs() < 3e-6), "{:?}", line.points);
+}
+
+#[test]
+fn lines_pass_below_a_cutoff_wall() {
+    let solution = cutoff();
+    let net = solution.flow_net(&FlowNetOptions { drops: 10, ..FlowNetOptions::default() });
+    assert_on_value(&solution, &net);
+    for line in &net.flow_lines {
+        assert_eq!(sides_of(line), (2, 7));
+    }
+    // Each equipotential joins the base of the layer or an end of it to the floor or a face of the wall.
+    for line in &net.equipotentials {
+        let (a, b) = sides_of(line);
+        assert!(
+            [0, 1, 8].contains(&a) && [3, 4, 5, 6].contains(&b) || [3, 4, 5, 6].contains(&a) && b == 8,
+            "{a} {b}"
+        );
+    }
+}
+
+#[test]
+fn three_electrodes_have_all_their_lines() {
+    let corners =
+        [(1.0, 0.0), (2.0, 0.0), (2.0, 2.0), (3.0, 2.0), (3.0, 3.0), (0.0, 3.0), (0.0, 2.0), (1.0, 2.0)];
+    let mut electrodes = [None; 8];
+    electrodes[0] = Some(0);
+    electrodes[3] = Some(1);
+    electrodes[5] = Some(2);
+    for levels in [[1.0, 0.0, 0.0], [0.0, 1.0, 0.3], [0.45, 1.0, 0.0], [0.5, 1.0, 0.0]] {
+        let solution = solved(&corners, &electrodes, &levels);
+        let net = solution.flow_net(&FlowNetOptions { drops: 10, ..FlowNetOptions::default() });
+        assert_on_value(&solution, &net);
+        for line in net.equipotentials.iter().chain(&net.flow_lines) {
+            assert_ne!(line.end, Terminus::StepLimit, "{levels:?} {}", line.value);
+        }
+    }
+}
+
+#[test]
+fn equipotentials_fan_out_where_levels_touch() {
+    let corners = [(0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0)];
+    let solution = solved(&corners, &[Some(0), Some(0), Some(0), Some(1)], &[0.0, 1.0]);
+    let net = solution.flow_net(&FlowNetOptions { drops: 5, ..FlowNetOptions::default() });
+    let ends: Vec<_> = net.equipotentials.iter().map(|l| (l.start, l.end, l.points.len())).collect();
+    assert_eq!(net.equipotentials.len(), 4, "{ends:?}");
+    assert!(net.n_channels.is_infinite());
+    assert!(!net.flow_lines.is_empty() && net.flow_lines.len() < 60, "{}", net.flow_lines.len());
+    for line in &net.equipotentials {
+        assert!(matches!((line.start, line.end), (Terminus::Vertex(_), Terminus::Vertex(_))), "{line:?}");
+        let n = line.points.len();
+        assert!((line.points[0].re.abs() + line.points[n - 1].re.abs()) < 1e-12);
+    }
+    assert_on_value(&solution, &net);
+}
+
+#[test]
+fn a_section_without_flow_has_an_empty_net() {
+    let corners = [(0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0)];
+    let solution = solved(&corners, &[Some(0), None, Some(0), None], &[2.0]);
+    let net = solution.flow_net(&FlowNetOptions::default());
+    assert!(net.equipotentials.is_empty() && net.flow_lines.is_empty());
+    assert!(net.n_channels.abs() < f64::MIN_POSITIVE);
+}
+
+#[test]
+fn profile_along_a_side_of_a_square_is_linear() {
+    let profile = square().along_side(0, 5).unwrap();
+    let phi: Vec<f64> = profile.iter().map(|p| p.potential.value).collect();
+    for (p, want) in phi.iter().zip([1.0, 0.75, 0.5, 0.25, 0.0]) {
+        assert!((p - want).abs() < 1e-12, "{phi:?}");
+    }
+    assert!(square().along_side(9, 5).is_err());
+}
