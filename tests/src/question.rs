@@ -1,0 +1,185 @@
+//! The question of a reference case put to the program.
+
+use sc_core::answers::{Bounded, ProbeError, Solution};
+use sc_core::map::{HalfPlaneMap, InverseError, MapError, MapOptions};
+use sc_core::outline::{Outline, Vertex as CoreVertex};
+use thiserror::Error;
+
+use crate::held_section::{HeldSection, Refused, walking_side, walking_vertex};
+use crate::prevertices::Prevertices;
+use crate::reference::{Ask, Case, Condition, Place, Value, Vertex};
+
+/// What the program answers: one number, or the entries of a matrix row by row.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Found {
+    /// The numbers.
+    pub values: Vec<f64>,
+    /// The program's bound on the error of each; `None` where the question is put to the bare map, which has none.
+    pub error: Option<f64>,
+}
+
+impl Found {
+    fn bounded(found: Bounded) -> Found {
+        Found { values: vec![found.value], error: Some(found.error) }
+    }
+
+    fn bare(value: f64) -> Found {
+        Found { values: vec![value], error: None }
+    }
+
+    /// Largest difference from the expected value.
+    ///
+    /// # Panics
+    /// If there are not as many numbers as expected.
+    #[must_use]
+    pub fn difference(&self, expected: &Value) -> f64 {
+        let expected: Vec<f64> = match expected {
+            Value::Number(value) => vec![*value],
+            Value::Matrix(rows) => rows.concat(),
+        };
+        assert_eq!(self.values.len(), expected.len(), "numbers found and numbers expected");
+        // Not f64::max, which would pass over a NaN.
+        let worse = |worst: f64, error: f64| if error <= worst { worst } else { error };
+        self.values.iter().zip(expected).map(|(a, b)| (a - b).abs()).fold(0.0, worse)
+    }
+}
+
+/// Why a case waits.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Waiting {
+    /// A vertex lies at infinity.
+    Infinity,
+    /// The potential is given along a side.
+    GivenData,
+}
+
+/// Why a case that should be answered is not.
+#[derive(Debug, Clone, PartialEq, Error)]
+pub enum NotAnswered {
+    /// By the program, for the section.
+    #[error(transparent)]
+    Refused(#[from] Refused),
+    /// By the bare map.
+    #[error(transparent)]
+    Map(#[from] MapError),
+    /// By a place.
+    #[error(transparent)]
+    Probe(#[from] ProbeError),
+    /// By a place, in the bare map.
+    #[error(transparent)]
+    Inverse(#[from] InverseError),
+    /// There is no shape factor, the conditions being others than two levels.
+    #[error("no shape factor")]
+    NoShapeFactor,
+    /// The gradient asked for is not finite and not zero.
+    #[error("the gradient at vertex {vertex} goes as the distance to the power {exponent}")]
+    NotRegular {
+        /// The vertex.
+        vertex: usize,
+        /// The power.
+        exponent: f64,
+    },
+    /// A question that nothing in the program answers yet.
+    #[error("no way to answer this kind of question")]
+    NoWay,
+}
+
+/// Whether a case waits for something that the program does not do yet. This is the only filter.
+#[must_use]
+pub fn waiting(case: &Case) -> Option<Waiting> {
+    if !case.bounded {
+        Some(Waiting::Infinity)
+    } else if case.sides.iter().any(|side| matches!(side, Condition::Function(_))) {
+        Some(Waiting::GivenData)
+    } else {
+        None
+    }
+}
+
+/// The program's answer to a case.
+///
+/// # Errors
+/// [`NotAnswered`], if the program refuses the section or the place, or has no such answer.
+pub fn answer(case: &Case) -> Result<Found, NotAnswered> {
+    if case.sides.iter().any(|side| matches!(side, Condition::Held(_))) {
+        let held: Vec<Option<f64>> = case.sides.iter().map(held).collect();
+        let mut section = HeldSection::by_level(vertices(case), &held);
+        if let Ask::ConductanceMatrix { electrodes } = &case.ask {
+            for (electrode, sides) in electrodes.iter().enumerate() {
+                sides.iter().for_each(|&side| section.electrodes[side] = Some(electrode));
+            }
+            section.levels = electrodes.iter().map(|sides| held[sides[0]].unwrap_or(0.0)).collect();
+        }
+        of_field(case, &section.solve()?)
+    } else {
+        let outline = Outline::new(&vertices(case)).map_err(Refused::Outline)?.value;
+        of_map(case, &HalfPlaneMap::solve(&outline, &MapOptions::default())?)
+    }
+}
+
+fn vertices(case: &Case) -> Vec<CoreVertex> {
+    let vertex = |vertex: &Vertex| match *vertex {
+        Vertex::Finite(point) => CoreVertex::At(point),
+        Vertex::Away { arriving, leaving } => CoreVertex::Away { arriving, leaving },
+    };
+    case.vertices.iter().map(vertex).collect()
+}
+
+fn held(condition: &Condition) -> Option<f64> {
+    match *condition {
+        Condition::Held(value) => Some(value),
+        Condition::Insulated | Condition::Function(_) => None,
+    }
+}
+
+fn of_field(case: &Case, solution: &Solution) -> Result<Found, NotAnswered> {
+    let outline = solution.section().outline();
+    let shape_factor = || solution.shape_factor().ok_or(NotAnswered::NoShapeFactor);
+    match &case.ask {
+        Ask::Conductance { multiplier } => Ok(Found::bounded(shape_factor()?.scaled(*multiplier))),
+        Ask::Resistance { multiplier } => {
+            let found = shape_factor()?;
+            let value = multiplier / found.value;
+            Ok(Found::bounded(Bounded::new(value, value.abs() * found.relative())))
+        }
+        Ask::Flux { sides, multiplier } => {
+            let fluxes = sides.iter().map(|&side| solution.side_flux(walking_side(outline, side)));
+            let (value, error) =
+                fluxes.fold((0.0, 0.0), |sum, flux| (sum.0 + flux.value, sum.1 + flux.error));
+            Ok(Found::bounded(Bounded::new(value.abs(), error).scaled(*multiplier)))
+        }
+        Ask::Potential { place: Place::At(point) } => Ok(Found::bounded(solution.probe(*point)?.potential)),
+        Ask::Potential { place: Place::Vertex(vertex) } => {
+            let side = walking_vertex(outline, *vertex);
+            Ok(Found::bounded(solution.probe_on_side(side, 0.0)?.potential))
+        }
+        Ask::GradientMagnitude { vertex, multiplier } => {
+            let corner = solution.corner(walking_vertex(outline, *vertex));
+            if !corner.is_regular() {
+                return Err(NotAnswered::NotRegular { vertex: *vertex, exponent: corner.exponent });
+            }
+            Ok(Found::bounded(corner.coefficient.scaled(*multiplier)))
+        }
+        Ask::ConductanceMatrix { .. } => {
+            let matrix = solution.matrix();
+            Ok(Found { values: matrix.values.concat(), error: Some(matrix.error) })
+        }
+        _ => of_map(case, solution.map()),
+    }
+}
+
+fn of_map(case: &Case, map: &HalfPlaneMap) -> Result<Found, NotAnswered> {
+    let prevertices = Prevertices::of(map);
+    Ok(Found::bare(match case.ask {
+        Ask::CrossRatio { vertices, complement } => prevertices.cross_ratio(vertices, complement),
+        Ask::EllipticModulus { vertices } => prevertices.elliptic_modulus(vertices),
+        Ask::ConformalRadius { at } => prevertices.conformal_radius(at)?,
+        Ask::HarmonicMeasure { at, from, to } => prevertices.harmonic_measure(at, from, to)?,
+        Ask::MapConstant { zero, one, infinity } => prevertices.map_constant(zero, one, infinity),
+        Ask::TransferResistance { contacts } => prevertices.transfer_resistance(contacts),
+        Ask::PrevertexRatio { numerator, denominator, zero, infinity } => {
+            prevertices.ratio(numerator, denominator, zero, infinity)
+        }
+        _ => return Err(NotAnswered::NoWay),
+    }))
+}

@@ -1,0 +1,104 @@
+//! The values of the five case files of `reference-data/` that the program can answer. Each case states its source.
+
+use std::sync::LazyLock;
+
+use sc_tests::question::{NotAnswered, Waiting, answer, waiting};
+use sc_tests::reference::{Case, load_cases};
+
+/// Relative error that no case may exceed.
+const ALWAYS: f64 = 1e-10;
+/// Relative error that is typical.
+const TYPICAL: f64 = 1e-12;
+
+/// A case with what the program answers.
+struct Row {
+    case: Case,
+    /// Error left after the rounding of the decimal inputs is taken off.
+    error: f64,
+    /// The program's own bound.
+    estimate: Option<f64>,
+}
+
+impl Row {
+    fn relative(&self) -> f64 {
+        self.error / self.case.value.scale()
+    }
+}
+
+static ROWS: LazyLock<Vec<Result<Row, (String, NotAnswered)>>> = LazyLock::new(|| {
+    let cases = load_cases().into_iter().filter(|case| waiting(case).is_none());
+    cases
+        .map(|case| {
+            let found = answer(&case).map_err(|why| (case.id.clone(), why))?;
+            let rounding = case.input_sensitivity.unwrap_or(0.0);
+            let difference = found.difference(&case.value);
+            // A NaN must stay one.
+            let error = if difference <= rounding { 0.0 } else { difference - rounding };
+            Ok(Row { case, error, estimate: found.error })
+        })
+        .collect()
+});
+
+fn rows() -> impl Iterator<Item = &'static Row> {
+    ROWS.iter().filter_map(|row| row.as_ref().ok())
+}
+
+#[test]
+fn every_case_that_does_not_wait_is_answered() {
+    let refused: Vec<_> = ROWS.iter().filter_map(|row| row.as_ref().err()).collect();
+    for (id, why) in &refused {
+        println!("{id}: {why}");
+    }
+    assert!(refused.is_empty(), "{} cases are not answered", refused.len());
+}
+
+#[test]
+fn cases_that_wait_are_counted() {
+    let cases = load_cases();
+    let count = |reason: Option<Waiting>| cases.iter().filter(|case| waiting(case) == reason).count();
+    let (answered, infinity, data) =
+        (count(None), count(Some(Waiting::Infinity)), count(Some(Waiting::GivenData)));
+    println!("{answered} cases answered; {infinity} wait for vertices at infinity, {data} for given data");
+    assert_eq!([answered, infinity, data], [121, 205, 26]);
+    assert_eq!(ROWS.len(), answered);
+}
+
+#[test]
+fn every_answer_is_right_to_ten_digits_and_nearly_all_to_twelve() {
+    let (mut seen, mut above, mut wrong) = (0, 0, 0);
+    for row in rows() {
+        seen += 1;
+        let relative = row.relative();
+        if relative.is_nan() || relative > TYPICAL {
+            above += 1;
+            println!("{}: relative error {relative:.1e}, estimate {:?}", row.case.id, row.estimate);
+        }
+        if relative.is_nan() || relative > ALWAYS {
+            wrong += 1;
+        }
+    }
+    assert_eq!(wrong, 0, "of {seen} cases, {wrong} are off by more than {ALWAYS:.0e}");
+    assert!(20 * above <= seen, "of {seen} cases, {above} are off by more than {TYPICAL:.0e}");
+    assert!(seen >= 121, "only {seen} cases were compared");
+}
+
+#[test]
+fn no_error_estimate_is_below_the_true_error() {
+    let (mut seen, mut short) = (0, 0);
+    let mut ratios: Vec<f64> = Vec::new();
+    for row in rows() {
+        let Some(estimate) = row.estimate else { continue };
+        seen += 1;
+        // The reference values are rounded to binary64 themselves.
+        let rounded = 0.5 * f64::EPSILON * row.case.value.scale();
+        if row.error.is_nan() || row.error > estimate + rounded {
+            short += 1;
+            println!("{}: error {:.2e} beyond the estimate {estimate:.2e}", row.case.id, row.error);
+        }
+        ratios.push(estimate / row.error.max(1e-14 * row.case.value.scale()));
+    }
+    ratios.sort_by(f64::total_cmp);
+    println!("{seen} estimates; estimate over error (or 1e-14): median {:.1}", ratios[seen / 2]);
+    assert_eq!(short, 0, "of {seen} estimates, {short} are too small");
+    assert!(seen >= 100, "only {seen} estimates were compared");
+}
