@@ -46,6 +46,12 @@ impl<K: fmt::Display> Fault<K> {
         self
     }
 
+    /// The same fault under another set of rules.
+    pub fn mapped<L>(self, into: impl FnOnce(K) -> L) -> Fault<L> {
+        let Self { kind, span, position, hint, related } = self;
+        Fault { kind: into(kind), span, position, hint, related }
+    }
+
     /// Fills in line and column from the text the fault was found in.
     pub fn locate(&mut self, text: &str) {
         self.position = self.span.map(|s| position(text, s.start));
