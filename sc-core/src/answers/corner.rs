@@ -12,6 +12,8 @@ pub enum CornerKind {
     HeldMeetsInsulated,
     /// Two sides held at different levels.
     Jump,
+    /// A vertex at infinity, where no power of the distance applies; exponent 1 and coefficient 0 stand for none.
+    AtInfinity,
 }
 
 /// The gradient near a vertex: `|∇φ| ≈ coefficient · r^exponent` for small distance `r`.

@@ -12,7 +12,7 @@ const SAFETY: f64 = 4.0;
 /// Floor of a relative bound per side: rounding in the angles and directions that both solutions share.
 const FLOOR_PER_SIDE: f64 = 0.5 * f64::EPSILON;
 /// Floor of a relative bound.
-const FLOOR: f64 = 16.0 * f64::EPSILON;
+const FLOOR: f64 = 48.0 * f64::EPSILON;
 /// Without a second solution: the side residual enters with this factor, times the number of sides.
 const UNCHECKED: f64 = 4.0;
 
@@ -33,7 +33,7 @@ pub(crate) struct Evidence {
 impl Evidence {
     /// Floor of a relative bound. An exponent off by ε changes an integral over gaps of ratio `r` by `ε ln r`.
     pub(crate) fn floor(&self) -> f64 {
-        FLOOR + self.sides as f64 * FLOOR_PER_SIDE + 0.25 * f64::EPSILON * self.ln_spread
+        FLOOR + self.sides as f64 * FLOOR_PER_SIDE + 0.5 * f64::EPSILON * self.ln_spread
     }
 
     /// Relative bound from the relative difference of two solutions.

@@ -200,6 +200,9 @@ impl Half {
         let arcs = self.basis.arcs();
         let j = self.map.line_index_of(vertex);
         let alpha = self.map.outline().alpha()[vertex];
+        if self.map.outline().point(vertex).is_none() {
+            return (CornerKind::AtInfinity, 1.0, 0.0);
+        }
         let before = (j + arcs.n - 1) % arcs.n;
         let (kind, b) = if arcs.is_end(j) {
             (CornerKind::HeldMeetsInsulated, -0.5)
@@ -243,7 +246,7 @@ impl Solution {
                 infinity_rank: 1,
                 split: 2.7,
                 nodes: SECOND_NODES,
-                disturbance: 2.0,
+                disturbance: 4.0,
                 tolerance: target,
                 ..MapOptions::default()
             };
@@ -397,7 +400,8 @@ impl Solution {
             + if self.evidence.checked { 0.0 } else { self.matrix.error * self.section.range() }
     }
 
-    /// Flux into the section through the part of a side between two distances from its start.
+    /// Flux into the section through the part of a side between two places, `from ≤ to` in walking order, as distances
+    /// from its start (on a side from infinity: from its finite end, not positive; `±∞` is its end at infinity).
     ///
     /// # Errors
     /// [`ProbeError::NoSuchPlace`] if a distance is not on the side.
@@ -405,27 +409,27 @@ impl Solution {
         if self.section.electrode_of_side(side).is_none() {
             return Ok(Bounded::new(0.0, 0.0));
         }
+        let outline = self.section.outline();
+        let (first, last) = outline.side_range(side);
+        for s in [from, to] {
+            if !(s >= first && s <= last) {
+                return Err(ProbeError::NoSuchPlace { side, s });
+            }
+        }
+        let at = |s: f64, end: f64| s.total_cmp(&end).is_eq();
         let of = |half: &Half| -> Result<f64, ProbeError> {
-            let place = |s: f64| half.map.on_side(side, s).ok_or(ProbeError::NoSuchPlace { side, s });
-            let length = half.map.outline().side_length(side).unwrap_or(f64::INFINITY);
-            let whole = |s: f64| s <= 0.0 || s >= length;
-            if !(from >= 0.0 && to <= length && from <= to) {
-                return Err(ProbeError::NoSuchPlace { side, s: if from >= 0.0 { to } else { from } });
+            let whole = || half.basis.along_side(&half.field, half.map.line_index_of(side)).im;
+            let between = |from: f64, to: f64| -> Result<f64, ProbeError> {
+                let place = |s: f64| half.map.on_side(side, s).ok_or(ProbeError::NoSuchPlace { side, s });
+                Ok(half.basis.between(&half.field, place(from)?, place(to)?).im)
+            };
+            // A part that ends at infinity, or in the vertex that the map sends there, is the whole less the rest.
+            match (at(from, first), at(to, last)) {
+                (true, true) => Ok(whole()),
+                (true, _) if half.map.on_side(side, first).is_none() => Ok(whole() - between(to, last)?),
+                (_, true) if half.map.on_side(side, last).is_none() => Ok(whole() - between(first, from)?),
+                _ => between(from, to),
             }
-            if whole(from) && whole(to) && from < to {
-                return Ok(half.basis.along_side(&half.field, half.map.line_index_of(side)).im);
-            }
-            // A part that ends in the vertex at infinity is the whole less the rest.
-            let n = half.map.outline().n();
-            let k = half.map.line_index_of(side);
-            let whole_flux = || half.basis.along_side(&half.field, k).im;
-            if k == n - 2 && to >= length {
-                return Ok(whole_flux() - half.basis.between(&half.field, place(0.0)?, place(from)?).im);
-            }
-            if k == n - 1 && from <= 0.0 {
-                return Ok(whole_flux() - half.basis.between(&half.field, place(to)?, place(length)?).im);
-            }
-            Ok(half.basis.between(&half.field, place(from)?, place(to)?).im)
         };
         let value = of(&self.first)?;
         let other = match &self.second {
@@ -480,24 +484,23 @@ impl Solution {
     /// [`ProbeError::NoSuchPlace`] if there is no such side or place.
     pub fn probe_on_side(&self, side: usize, s: f64) -> Result<Probe, ProbeError> {
         let outline = self.section.outline();
-        let no_place = ProbeError::NoSuchPlace { side, s };
-        let length = if side < outline.n() { outline.side_length(side) } else { None };
-        let (Some(length), Some(start)) = (length, outline.point(side)) else { return Err(no_place) };
-        if !(s >= 0.0 && s <= length * (1.0 + 4.0 * f64::EPSILON)) {
-            return Err(no_place);
+        let (first, last) = if side < outline.n() { outline.side_range(side) } else { (0.0, -1.0) };
+        let slack = 4.0 * f64::EPSILON * outline.size();
+        if !(s.is_finite() && s >= first - slack && s <= last + slack) {
+            return Err(ProbeError::NoSuchPlace { side, s });
         }
-        let z = if s >= length {
-            outline.point(side + 1).unwrap_or(start)
-        } else {
-            start + outline.side_direction(side) * s
-        };
+        let s = s.clamp(first, last);
+        let z = outline.place(side, s);
         let of = |half: &Half| {
             let at = half.map.on_side(side, s)?;
             Some(Preimage { at, miss: 0.0, on_side: Some((side, s)), clearance: 0.0 })
         };
         match of(&self.first) {
             Some(p) => Ok(self.assemble(z, p, self.second.as_ref().and_then(of))),
-            None => Ok(self.at_infinity(z, side, s)),
+            None if outline.point(self.first.map.at_infinity()) == Some(z) => {
+                Ok(self.at_infinity(z, side, s))
+            }
+            None => Err(ProbeError::NoSuchPlace { side, s }),
         }
     }
 
@@ -536,12 +539,13 @@ impl Solution {
 
     /// The vertex at a place of a side, if it is one.
     fn vertex_at(&self, side: usize, s: f64) -> Option<usize> {
-        let length = self.section.outline().side_length(side)?;
-        let close = 4.0 * f64::EPSILON * self.section.outline().size();
-        if s <= close {
+        let outline = self.section.outline();
+        let (first, last) = outline.side_range(side);
+        let close = 4.0 * f64::EPSILON * outline.size();
+        if (s - first).abs() <= close {
             Some(side)
-        } else if length - s <= close {
-            Some((side + 1) % self.section.outline().n())
+        } else if (last - s).abs() <= close {
+            Some((side + 1) % outline.n())
         } else {
             None
         }
@@ -557,7 +561,7 @@ impl Solution {
             if !corner.is_regular() {
                 return (Gradient::Finite { components: [0.0, 0.0], error: 0.0 }, 0.0);
             }
-            return self.gradient_beside(vertex);
+            return self.gradient_beside(&corner);
         }
         let g = self.first.gradient(p.at);
         let h = match (&self.second, other) {
@@ -569,16 +573,16 @@ impl Solution {
     }
 
     /// At a vertex with a finite gradient: just inside, the length from the corner coefficient.
-    fn gradient_beside(&self, vertex: usize) -> (Gradient, f64) {
-        let corner = self.corner(vertex);
+    fn gradient_beside(&self, corner: &Corner) -> (Gradient, f64) {
+        let vertex = corner.vertex;
         let outline = self.section.outline();
-        let n = outline.n();
         // The direction from a place near the vertex on the leaving side; the gradient is continuous there.
-        let length = outline.side_length(vertex).unwrap_or(0.0);
-        let near = self.first.map.on_side(vertex, 1e-7 * length).or_else(|| {
+        let n = outline.n();
+        let tiny = 1e-7 * outline.size();
+        let small = |k: usize| outline.side_length(k).map_or(tiny, |l| 1e-7 * l);
+        let near = self.first.map.on_side(vertex, small(vertex)).or_else(|| {
             let before = (vertex + n - 1) % n;
-            let length = outline.side_length(before)?;
-            self.first.map.on_side(before, length * (1.0 - 1e-7))
+            self.first.map.on_side(before, outline.side_range(before).1 - small(before))
         });
         let direction = near.map_or(Complex64::new(0.0, 0.0), |p| {
             let g = self.first.gradient(p);
@@ -605,7 +609,7 @@ impl Solution {
         let gradient = if corner.is_singular() {
             Gradient::Infinite
         } else if corner.is_regular() {
-            self.gradient_beside(vertex).0
+            self.gradient_beside(&corner).0
         } else {
             Gradient::Finite { components: [0.0, 0.0], error: 0.0 }
         };
@@ -623,7 +627,8 @@ impl Solution {
         }
     }
 
-    /// The leading singularity of the gradient at a vertex (walking index).
+    /// The leading singularity of the gradient at a vertex (walking index); of the kind [`CornerKind::AtInfinity`], and
+    /// without a coefficient, at a vertex at infinity.
     pub fn corner(&self, vertex: usize) -> Corner {
         let (kind, exponent, value) = self.first.corner(vertex);
         let other = self.second.as_ref().map_or(value, |half| half.corner(vertex).2);

@@ -1,7 +1,7 @@
 //! From an outline to the gaps of its half-plane map: start, coarse iteration, final iteration.
 
-use super::gap_line::GapLine;
 use super::equations::{End, Equations};
+use super::gap_line::GapLine;
 use super::parameter_problem::{Fit, FitOptions, IterationObserver, StopReason, fit};
 use super::side_integrals::RuleSet;
 use super::start::{CrossRatioStart, Source, StartError, split_sides, truncate};
@@ -135,9 +135,8 @@ pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved,
     let places: Vec<Vec<usize>> = (0..n - 1)
         .map(|k| {
             let vertex = order(k);
-            let stands = |s: &Option<Source>| {
-                *s == Some(Source::Vertex(vertex)) || *s == Some(Source::Cut(vertex))
-            };
+            let stands =
+                |s: &Option<Source>| *s == Some(Source::Vertex(vertex)) || *s == Some(Source::Cut(vertex));
             (0..pieces - 1).filter(|j| stands(&source[(at_infinity + 1 + j) % pieces])).collect()
         })
         .collect();

@@ -90,11 +90,7 @@ impl HalfPlaneMap {
                 Err(InverseError::Outside { x: z.re, y: z.im, distance: nearest.distance })
             }
             Containment::OnSide(side) => {
-                let s = if side == nearest.side {
-                    nearest.s
-                } else {
-                    self.outline().point(side).map_or(0.0, |w| (z - w).norm())
-                };
+                let s = if side == nearest.side { nearest.s } else { self.outline().distance_along(side, z) };
                 self.on_side(side, s)
                     .map(|at| Preimage {
                         at,
@@ -178,19 +174,23 @@ impl HalfPlaneMap {
     fn path(&self, z: Point, nearest: &Nearest, turn: f64) -> Option<HalfPlanePoint> {
         let n = self.outline().n();
         let side = nearest.side;
-        let length = self.outline().side_length(side).unwrap_or(f64::INFINITY);
-        let from_end = (length - nearest.s).abs().min(nearest.s.abs());
+        let length = self.outline().side_length(side);
+        let from_end = length.map_or(nearest.s.abs(), |l| (l - nearest.s).min(nearest.s));
+        let at_start = match length {
+            Some(length) => nearest.s < 0.5 * length,
+            None => self.outline().point(side).is_some(),
+        };
         let reach = (z - nearest.foot).norm();
         let inward = (z - nearest.foot) / reach;
         // The distance at which the start's own power law is good: a tenth of the way to the next corner.
-        let (mut here, mut rho) = if from_end > 1e-12 * length {
+        let (mut here, mut rho) = if from_end > 1e-12 * length.unwrap_or_else(|| self.outline().size()) {
             let foot = self.on_side(side, nearest.s)?;
             let per_length = inward / self.log_derivative(foot);
             let rho = (0.1 * from_end).min(0.25 * reach).min(0.2 / per_length.norm());
             let step = per_length * rho;
             (HalfPlanePoint { anchor: foot.anchor, ln_offset: foot.ln_offset + step }, rho)
         } else {
-            let vertex = if nearest.s.abs() < 0.5 * length { side } else { (side + 1) % n };
+            let vertex = if at_start { side } else { (side + 1) % n };
             let k = self.line_index_of(vertex);
             if k == n - 1 {
                 self.start_near_infinity(vertex, inward, reach)?
@@ -261,10 +261,10 @@ impl HalfPlaneMap {
     /// where the power law is a straight line.
     fn newton(&self, start: HalfPlanePoint, z: Point) -> Result<Preimage, InverseError> {
         let mut here = start;
-        let size = self.outline().size();
+        let size = self.outline().size().max(z.norm());
         let mut miss = f64::INFINITY;
         for _ in 0..MAX_NEWTON {
-            let target = z - self.corner_of(here.anchor);
+            let target = z - self.base(here.anchor);
             let image = self.from_anchor(here);
             let d = self.log_derivative(here);
             let error = target - image;
@@ -292,10 +292,6 @@ impl HalfPlaneMap {
             }
         }
         Err(InverseError::NotReached { x: z.re, y: z.im, miss, steps: MAX_NEWTON })
-    }
-
-    fn corner_of(&self, anchor: usize) -> Point {
-        self.outline().point(self.vertex_of(anchor)).unwrap_or_default()
     }
 }
 

@@ -5,8 +5,8 @@
 //! Solved by Gauss–Newton steps with Levenberg–Marquardt damping on the normal equations: the residual vanishes at
 //! the solution, so what the normal equations lose in digits they only lose in speed.
 
-use super::gap_line::GapLine;
 use super::equations::{Equations, Evaluation};
+use super::gap_line::GapLine;
 use argmin::core::observers::{Observe, ObserverMode};
 use argmin::core::{
     Error, Executor, IterState, KV, Problem, Solver, State, TerminationReason, TerminationStatus,
@@ -237,7 +237,12 @@ impl<'a> Solver<Equations<'a>, LineState> for DampedGaussNewton {
 }
 
 /// Finds gaps and scale from a start.
-pub(crate) fn fit(equations: Equations<'_>, start: &GapLine, ln_scale: Option<f64>, options: &FitOptions) -> Fit {
+pub(crate) fn fit(
+    equations: Equations<'_>,
+    start: &GapLine,
+    ln_scale: Option<f64>,
+    options: &FitOptions,
+) -> Fit {
     let mut first = start.log_gaps().to_vec();
     let ln_scale = ln_scale.unwrap_or_else(|| equations.matching_scale(start));
     first.push(ln_scale);

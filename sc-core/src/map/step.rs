@@ -57,7 +57,8 @@ pub(crate) fn step(line: &GapLine, product: &PowerProduct, p: usize) -> Step {
         sums.add(product, end, &nodes, (factor.0, factor.1 * sign), &ln_from_p, p, to_p);
     }
     let mut nodes = Vec::new();
-    let factor = product.along_segment(p, from, to, |at, value, weight, ln| nodes.push((at, value, weight, ln)));
+    let factor =
+        product.along_segment(p, from, to, |at, value, weight, ln| nodes.push((at, value, weight, ln)));
     sums.add(product, p, &nodes, factor, &ln_from_p, p, |at| at);
     sums.finish(line, product, p, &ln_from_p, ln_unit_p)
 }
@@ -109,13 +110,21 @@ impl Sums {
         }
     }
 
-    fn finish(self, line: &GapLine, product: &PowerProduct, p: usize, ln_from_p: &[f64], ln_unit_p: f64) -> Step {
+    fn finish(
+        self,
+        line: &GapLine,
+        product: &PowerProduct,
+        p: usize,
+        ln_from_p: &[f64],
+        ln_unit_p: f64,
+    ) -> Step {
         let n = line.n_points();
         let zero = Complex64::new(0.0, 0.0);
         let ends = [p - 1, p + 1];
         // (x_j − x_p) ∂Δ/∂x_j, and unit_p ∂Δ/∂x_j.
-        let moment =
-            |j: usize| if j == p || ends.contains(&j) { zero } else { -self.nearness[j] * product.exponent(j) };
+        let moment = |j: usize| {
+            if j == p || ends.contains(&j) { zero } else { -self.nearness[j] * product.exponent(j) }
+        };
         let place = |j: usize| (ln_from_p[j] - ln_unit_p).exp() * if j < p { -1.0 } else { 1.0 };
         let (mut s0, mut s1, mut exponents) = (-self.nearness[p] * product.exponent(p), zero, 0.0);
         for j in 0..n {
@@ -142,7 +151,8 @@ impl Sums {
                 unit = here;
                 let gap = if toward_right { j - 1 } else { j };
                 // Σ D_j g with D_j = moment/(x_j − x_p): signed distances.
-                derivatives[gap] = sum * (line.log_gaps()[gap] - here).exp() * if toward_right { 1.0 } else { -1.0 };
+                derivatives[gap] =
+                    sum * (line.log_gaps()[gap] - here).exp() * if toward_right { 1.0 } else { -1.0 };
             }
         };
         run(&mut (p + 1..n).rev(), a, true);

@@ -60,6 +60,11 @@ impl Outline {
         best.map_or(Nearest { side: 0, s: 0.0, distance: f64::INFINITY, foot: z }, |(b, _)| b)
     }
 
+    /// The distance `s` along a side of a point on it, as in [`Nearest::s`].
+    pub(crate) fn distance_along(&self, side: usize, z: Point) -> f64 {
+        self.nearest_on(side, z).0.s
+    }
+
     /// The nearest point of one side, and how far to the left of its line `z` lies.
     fn nearest_on(&self, side: usize, z: Point) -> (Nearest, f64) {
         let (start, direction, length, sign) = match self.side(side) {

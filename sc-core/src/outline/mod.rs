@@ -208,6 +208,28 @@ impl Outline {
         }
     }
 
+    /// The first and last distance `s` along a side: `(0, length)`, `(0, ∞)`, or `(−∞, 0)` on a side from infinity.
+    pub fn side_range(&self, k: usize) -> (f64, f64) {
+        match self.side(k) {
+            Side::Between(a, b) => (0.0, (b - a).norm()),
+            Side::Outward(..) => (0.0, f64::INFINITY),
+            Side::Inward(..) => (f64::NEG_INFINITY, 0.0),
+        }
+    }
+
+    /// The point at distance `s` along a side.
+    pub fn place(&self, k: usize, s: f64) -> Point {
+        match self.side(k) {
+            Side::Between(a, b) => {
+                let length = (b - a).norm();
+                if s >= length { b } else { a + (b - a) * (s / length) }
+            }
+            Side::Outward(a, heading) => a + heading * s,
+            // The heading points toward infinity, where s is negative.
+            Side::Inward(b, heading) => b - heading * s,
+        }
+    }
+
     /// How side `k` runs.
     pub(crate) fn side(&self, k: usize) -> Side {
         self.sides[k % self.n()]

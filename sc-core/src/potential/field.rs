@@ -132,7 +132,9 @@ impl FieldBasis {
                 base[fine_of[j]] = -0.5;
             }
         }
-        let junctions: Vec<usize> = (0..n).filter(|&j| arcs.is_junction(j)).collect();
+        // With every side held the jump at infinity is what the finite ones leave over, and needs no term.
+        let last_pole = if all_held { n - 1 } else { n };
+        let junctions: Vec<usize> = (0..last_pole).filter(|&j| arcs.is_junction(j)).collect();
         // On insulated sides W' must be real: the phase there decides the common factor.
         let insulated = (0..n).find(|&k| arcs.electrode[k].is_none());
         let fine_gap = |k: usize| match k {
@@ -344,9 +346,17 @@ impl FieldBasis {
 
     /// From a pole's reference point to the middle of the gap on its right (left, at the last point).
     fn to_middle(&self, field: &Field, fine: usize) -> Complex64 {
-        let right = fine + 1 < self.fine.n_points();
-        let gap = self.fine.log_gaps()[if right { fine } else { fine - 1 }];
-        let half = 0.5 * (gap - crate::map::unit(&self.fine, fine)).exp();
+        let right = fine + 1 < self.fine.n_points() || self.fine.n_points() == 1;
+        let gap = if self.fine.n_points() == 1 {
+            None
+        } else if right {
+            Some(fine)
+        } else {
+            fine.checked_sub(1)
+        };
+        // A line of one point has no gaps: any distance will do.
+        let half =
+            gap.map_or(1.0, |i| 0.5 * (self.fine.log_gaps()[i] - crate::map::unit(&self.fine, fine)).exp());
         let middle = Complex64::new(if right { half } else { -half }, 0.0);
         self.terms(field).map(|(c, t)| c * self.from_reference(t, fine, middle)).sum()
     }
@@ -378,7 +388,7 @@ impl FieldBasis {
 
     fn from_reference_to(&self, term: &Term, p: HalfPlanePoint) -> Complex64 {
         let integral = if self.is_pole(p.anchor) {
-            term.product.segment(p.anchor, self.reference_offset(p.anchor), p.offset())
+            term.product.from_reference(p, self.reference_offset(p.anchor))
         } else {
             term.product.integral(p)
         };

@@ -9,5 +9,5 @@ mod truncate;
 
 pub(crate) use cross_ratio::CrossRatioStart;
 pub(crate) use split::{SplitOutline, split_sides};
-pub(crate) use truncate::{Source, truncate};
 pub use triangulate::StartError;
+pub(crate) use truncate::{Source, truncate};

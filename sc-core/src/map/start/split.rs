@@ -8,6 +8,8 @@ use std::collections::HashMap;
 const SHARP: f64 = 0.3;
 /// A side is cut in three when the apex of its triangle is nearer than this part of its length.
 const NEARNESS: f64 = 1.0 / 3.0;
+/// Relative distance within which a vertex lies on a side.
+const ON_WALL: f64 = 1e-11;
 /// Rounds of splitting: each cuts lengths by three, so 60 rounds span 28 decades of detail.
 const MAX_ROUNDS: usize = 60;
 /// More pieces than this are refused.
@@ -36,7 +38,7 @@ struct Corner {
 /// Splits the sides of a bounded outline. `parts` is where a side is cut: at `1/parts` from either end
 /// (3 is usual; another value gives an independent start).
 pub(crate) fn split_sides(outline: &[Point], alpha: &[f64], parts: f64) -> Result<SplitOutline, StartError> {
-    let mut corners = cut_sharp_corners(outline, alpha);
+    let mut corners = match_wall_faces(&cut_sharp_corners(outline, alpha));
     let mut triangles = triangulate(&points(&corners))?;
     for _ in 0..MAX_ROUNDS {
         let long = long_sides(&corners, &triangles);
@@ -80,6 +82,35 @@ fn cut_sharp_corners(outline: &[Point], alpha: &[f64]) -> Vec<Corner> {
         if end > 0.0 {
             out.push(Corner { at: b - direction * end, alpha: 1.0, original: None, settled: true });
         }
+    }
+    out
+}
+
+/// A vertex on one face of a wall of no thickness is given a flat partner on the other face, so that both faces have
+/// the same pieces. In a valid outline nothing else lies on a side.
+fn match_wall_faces(corners: &[Corner]) -> Vec<Corner> {
+    let n = corners.len();
+    let mut out = Vec::with_capacity(n);
+    for k in 0..n {
+        out.push(corners[k]);
+        let (a, b) = (corners[k].at, corners[(k + 1) % n].at);
+        let side = b - a;
+        let mut on_it: Vec<(f64, Point)> = corners
+            .iter()
+            .filter_map(|c| {
+                let z = (c.at - a) / side;
+                let inside = z.re > ON_WALL && z.re < 1.0 - ON_WALL && z.im.abs() < ON_WALL;
+                inside.then_some((z.re, c.at))
+            })
+            .collect();
+        on_it.sort_by(|p, q| p.0.total_cmp(&q.0));
+        on_it.dedup_by(|p, q| p.1 == q.1);
+        out.extend(on_it.into_iter().map(|(_, at)| Corner {
+            at,
+            alpha: 1.0,
+            original: None,
+            settled: corners[k].settled,
+        }));
     }
     out
 }
