@@ -247,7 +247,7 @@ impl HalfPlaneMap {
     /// image less that of a fixed point above it.
     pub fn from_anchor(&self, p: HalfPlanePoint) -> Point {
         let w = if self.is_end(p.anchor) {
-            self.product.from_reference(p, self.reference_offset(p.anchor))
+            self.product.integral_from(self.reference_offset(p.anchor), p)
         } else {
             self.product.integral(p)
         };
@@ -341,7 +341,7 @@ impl HalfPlaneMap {
         distance: f64,
         limit: f64,
     ) -> Option<f64> {
-        let is_channel = self.exponents[anchor] == -1.0;
+        let is_channel = self.outline.alpha()[self.vertex_of(anchor)] >= 0.0;
         let mut lambda = limit;
         for _ in 0..MAX_PLACE_STEPS {
             let here = on_axis(anchor, lambda, rightward);

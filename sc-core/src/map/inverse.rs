@@ -100,7 +100,7 @@ impl HalfPlaneMap {
                     })
                     .ok_or(InverseError::AtInfinity { x: z.re, y: z.im })
             }
-            Containment::Inside => self.from_boundary(z, &nearest),
+            Containment::Inside => self.reached_from_boundary(z, &nearest),
         }
     }
 
@@ -158,7 +158,7 @@ impl HalfPlaneMap {
         good.then(|| self.nearest_anchor(HalfPlanePoint { anchor: from.anchor, ln_offset }))
     }
 
-    fn from_boundary(&self, z: Point, nearest: &Nearest) -> Result<Preimage, InverseError> {
+    fn reached_from_boundary(&self, z: Point, nearest: &Nearest) -> Result<Preimage, InverseError> {
         let mut last = InverseError::NotReached { x: z.re, y: z.im, miss: f64::INFINITY, steps: 0 };
         for turn in [MAX_TURN, MAX_TURN / 4.0, MAX_TURN / 16.0] {
             let Some(end) = self.path(z, nearest, turn) else { continue };
@@ -268,8 +268,12 @@ impl HalfPlaneMap {
             let image = self.from_anchor(here);
             let d = self.log_derivative(here);
             let error = target - image;
-            let change =
-                if here.ln_offset.re < CLOSE { (target / image).ln() * image / d } else { error / d };
+            let in_power_law = match self.exponents()[here.anchor] + 1.0 {
+                alpha if alpha > 0.0 => here.ln_offset.re < CLOSE,
+                // Toward infinity the power law leads farther in, past the reference point; a channel is linear.
+                alpha => alpha < 0.0 && here.ln_offset.re < CLOSE - 2.0,
+            };
+            let change = if in_power_law { (target / image).ln() * image / d } else { error / d };
             if !(change.re.is_finite() && change.im.is_finite()) {
                 break;
             }

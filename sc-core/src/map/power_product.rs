@@ -10,7 +10,7 @@ use super::gap_line::GapLine;
 use super::side_integrals::RuleSet;
 use crate::quadrature::{argument_upper, ln_positive};
 use num_complex::Complex64;
-use std::f64::consts::{FRAC_PI_2, PI};
+use std::f64::consts::PI;
 
 /// Distances beyond this many anchor units are constants for every offset that the anchor serves.
 const FINITE_DISTANCE: f64 = 1e140;
@@ -20,6 +20,8 @@ const SQUARABLE: f64 = 1e140;
 const GROWTH: f64 = 1.5;
 /// Below this `ln` offset the other points' factors are constant to all digits.
 const NEAR_LN_OFFSET: f64 = -40.0;
+/// An anchor is changed for one at less than this part of the distance.
+const CLEARLY_NEARER: f64 = 0.9;
 /// Panels in one path. Each grows by 2.5, so 2000 span more than the range of `f64`.
 const MAX_PANELS: usize = 2000;
 
@@ -217,7 +219,8 @@ impl PowerProduct {
             else {
                 break;
             };
-            if distance >= own {
+            // Between two equally near points the present one stays, or an iteration would swing for ever.
+            if distance >= CLEARLY_NEARER * own {
                 break;
             }
             let scale = (view.ln_unit - self.views[best.index].ln_unit).exp();
@@ -262,7 +265,7 @@ impl PowerProduct {
 
     /// `∫ P dζ` from an offset to a point of the same anchor. Close to an anchor with exponent −1 or below the
     /// product is its leading power, integrated in closed form.
-    pub(crate) fn from_reference(&self, p: HalfPlanePoint, reference: Complex64) -> Scaled {
+    pub(crate) fn integral_from(&self, reference: Complex64, p: HalfPlanePoint) -> Scaled {
         if p.ln_offset.re >= NEAR_LN_OFFSET || self.views[p.anchor].self_exponent > -1.0 {
             return self.segment(p.anchor, reference, p.offset());
         }

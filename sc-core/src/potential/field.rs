@@ -358,7 +358,7 @@ impl FieldBasis {
         let half =
             gap.map_or(1.0, |i| 0.5 * (self.fine.log_gaps()[i] - crate::map::unit(&self.fine, fine)).exp());
         let middle = Complex64::new(if right { half } else { -half }, 0.0);
-        self.terms(field).map(|(c, t)| c * self.from_reference(t, fine, middle)).sum()
+        self.terms(field).map(|(c, t)| c * self.term_integral_to(t, fine, middle)).sum()
     }
 
     /// `∫ W' dζ` from the reference of fine point `i` to that of `i + 1`.
@@ -375,20 +375,20 @@ impl FieldBasis {
         let (from_left, from_right) = (above(i, 1.0), above(i + 1, -1.0));
         self.terms(field)
             .map(|(c, t)| {
-                let w = self.from_reference(t, i, from_left) - self.from_reference(t, i + 1, from_right);
+                let w = self.term_integral_to(t, i, from_left) - self.term_integral_to(t, i + 1, from_right);
                 c * w
             })
             .sum()
     }
 
     /// One term's integral from the reference of a fine point to an offset.
-    fn from_reference(&self, term: &Term, fine: usize, offset: Complex64) -> Complex64 {
-        self.from_reference_to(term, HalfPlanePoint::new(fine, offset))
+    fn term_integral_to(&self, term: &Term, fine: usize, offset: Complex64) -> Complex64 {
+        self.term_integral(term, HalfPlanePoint::new(fine, offset))
     }
 
-    fn from_reference_to(&self, term: &Term, p: HalfPlanePoint) -> Complex64 {
+    fn term_integral(&self, term: &Term, p: HalfPlanePoint) -> Complex64 {
         let integral = if self.is_pole(p.anchor) {
-            term.product.from_reference(p, self.reference_offset(p.anchor))
+            term.product.integral_from(self.reference_offset(p.anchor), p)
         } else {
             term.product.integral(p)
         };
@@ -406,7 +406,7 @@ impl FieldBasis {
     }
 
     fn potential_at(&self, field: &Field, at: HalfPlanePoint) -> Complex64 {
-        let terms: Complex64 = self.terms(field).map(|(c, t)| c * self.from_reference_to(t, at)).sum();
+        let terms: Complex64 = self.terms(field).map(|(c, t)| c * self.term_integral(t, at)).sum();
         field.reference[at.anchor] + terms
     }
 

@@ -8,6 +8,6 @@ mod triangulate;
 mod truncate;
 
 pub(crate) use cross_ratio::CrossRatioStart;
-pub(crate) use split::{SplitOutline, split_sides};
+pub(crate) use split::split_sides;
 pub use triangulate::StartError;
 pub(crate) use truncate::{Source, truncate};
