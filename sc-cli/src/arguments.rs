@@ -40,8 +40,11 @@ and run
     prevertex solve corner.toml --json       # the same for a script
     prevertex starter seepage                # a commented section of another trade
 
-Exit status: 0 done; 1 the section was understood and cannot be answered; 2 the file or the command line
-is wrong; 3 answered, with an error above the tolerance asked for.";
+Exit status
+    0  done
+    1  the section was understood and cannot be answered
+    2  the file or the command line is wrong
+    3  answered, with an error above the tolerance asked for";
 
 /// The commands.
 #[derive(Debug, Clone, Subcommand)]

@@ -33,7 +33,7 @@ pub fn document_of(prepared: &Prepared, solution: &Solution, checked: bool) -> R
     let sides = collect.sides();
     let corners = collect.corners();
     let mut warnings: Vec<String> = prepared.remarks.iter().map(ToString::to_string).collect();
-    warnings.extend(infinite_values(&held, &sides, &matrix, solution.shape_factor()));
+    warnings.extend(infinite_values(&held, &matrix, solution.shape_factor()));
     warnings.extend(endless);
     warnings.extend(
         sides
@@ -81,19 +81,20 @@ fn reciprocal(c: &Measured, unit: &'static str) -> Option<Measured> {
 }
 
 /// Why values of the whole section are infinite.
-fn infinite_values(
-    held: &[Held],
-    sides: &[Side],
-    matrix: &Matrix,
-    shape_factor: Option<Bounded>,
-) -> Vec<String> {
+fn infinite_values(held: &[Held], matrix: &Matrix, shape_factor: Option<Bounded>) -> Vec<String> {
     let mut out = Vec::new();
     let cause = "held sides of different values touch, so the flux between them is infinite";
     let names: Vec<&str> = held.iter().filter(|h| h.flux.0.is_infinite()).map(|h| h.side.as_str()).collect();
     if !names.is_empty() {
         out.push(format!("the flux through {} is infinite: {cause}", quoted(&names)));
-    } else if sides.iter().any(|s| s.flux.0.is_infinite()) {
-        out.push(format!("the flux through some sides is infinite: {cause}"));
+    }
+    let names: Vec<&str> = held.iter().filter(|h| h.flux.0.is_nan()).map(|h| h.side.as_str()).collect();
+    if !names.is_empty() {
+        let names = quoted(&names);
+        out.push(format!(
+            "the flux through {names} has no value: a held side of a higher and one of a lower value touch, so an \
+             infinite flux comes in and goes out"
+        ));
     }
     if matrix.values.iter().flatten().any(|v| v.0.is_infinite()) {
         out.push("entries of the matrix are infinite: the names of their row and column touch".to_owned());
@@ -123,7 +124,7 @@ impl Collect<'_> {
         let levels = self.prepared.section.levels();
         (self.prepared.electrodes.iter().enumerate())
             .map(|(electrode, name)| {
-                let flux = self.solution.electrode_flux(electrode).scaled(self.scales.conductivity);
+                let flux = self.flux(electrode);
                 Held {
                     side: name.clone(),
                     value: Number(levels[electrode]),
@@ -132,6 +133,29 @@ impl Collect<'_> {
                 }
             })
             .collect()
+    }
+
+    /// Flux through an electrode. Between one of a higher and one of a lower level that touch it, an infinite flux
+    /// comes in and goes out, and their difference is no number.
+    fn flux(&self, electrode: usize) -> Bounded {
+        let section = &self.prepared.section;
+        let n = section.outline().n();
+        let level = section.levels()[electrode];
+        let (mut higher, mut lower) = (false, false);
+        for k in 0..n {
+            for (own, other) in [(k, (k + 1) % n), ((k + 1) % n, k)] {
+                if section.electrode_of_side(own) == Some(electrode)
+                    && let Some(beside) = section.level_of_side(other)
+                {
+                    higher |= beside > level;
+                    lower |= beside < level;
+                }
+            }
+        }
+        if higher && lower {
+            return Bounded { value: f64::NAN, error: 0.0 };
+        }
+        self.solution.electrode_flux(electrode).scaled(self.scales.conductivity)
     }
 
     fn matrix(&self) -> Matrix {
@@ -150,9 +174,7 @@ impl Collect<'_> {
         (self.prepared.file.side_names().into_iter())
             .map(|name| {
                 let electrode = self.prepared.electrodes.iter().position(|e| e == name);
-                // Through a held name the parts are added in the core, infinite ones of either sign included.
-                let flux = electrode.map_or(Bounded::new(0.0, 0.0), |e| self.solution.electrode_flux(e));
-                let flux = flux.scaled(self.scales.conductivity);
+                let flux = electrode.map_or(Bounded::new(0.0, 0.0), |e| self.flux(e));
                 let length: f64 = self
                     .prepared
                     .sides_named(name)
@@ -303,8 +325,8 @@ fn infinite_probes(probes: &[Probe]) -> Vec<String> {
     if !gradients.is_empty() {
         let places = list(gradients);
         out.push(format!(
-            "the gradient is infinite at {places}: there the boundary turns by more than the field can follow; \
-             the key `corners` says how fast it grows"
+            "the gradient is infinite at {places}: toward such a corner it grows without bound, by the law that \
+             is given with the corners"
         ));
     }
     let streams: Vec<String> = probes.iter().filter(|p| p.stream.0.is_infinite()).map(place).collect();

@@ -10,13 +10,13 @@ use crate::report::{Table, digits};
 /// Runs the command.
 pub fn run(arguments: &UnitsArguments) -> Outcome {
     let wanted = arguments.measure.as_deref().map(str::to_lowercase);
-    let mut table = Table::new(["unit", "measures", "in SI units"]);
+    let mut table = Table::new(["unit", "measures", "size", "in"]);
     let mut found = false;
     for unit in known_units() {
         if wanted.as_ref().is_none_or(|w| unit.measures.to_lowercase().contains(w.as_str())) {
             found = true;
             let size = digits::short(unit.factor().value());
-            table.row([unit.name.to_owned(), unit.measures.to_owned(), format!("{size} {}", unit.dimension)]);
+            table.row([unit.name.to_owned(), unit.measures.to_owned(), size, unit.dimension.to_string()]);
         }
     }
     if let Some(wanted) = wanted {

@@ -67,7 +67,7 @@ fn fluxes(document: &Document) -> String {
     let size = scale(document.sides.iter().map(|s| s.flux.0));
     let flux = |value: Number, error: Number| rounded(value.0, last_place(error.0, size, IN_TABLE), size);
     let mut out = format!("\nFlux into the section, {}\n", flux_words(document));
-    let value = format!("held at, {}", units.level);
+    let value = if units.level == "1" { "held at".to_owned() } else { format!("held at, {}", units.level) };
     let length = format!("length, {}", units.length);
     let mut table = Table::new(["side", &value, "flux", &length]);
     for side in &document.sides {
@@ -126,14 +126,16 @@ fn probes(document: &Document) -> String {
         Gradient::Infinite(v) => v.0,
     };
     let all = |of: &dyn Fn(&Probe) -> f64| scale(document.probes.iter().map(of));
-    let place = scale(document.probes.iter().flat_map(|p| [p.at[0].0, p.at[1].0]));
     let (level, stream) = (all(&|p| p.potential.0), all(&|p| p.stream.0));
     // Toward a corner gradients grow without bound: each has the digits of its own length.
     let length = |p: &Probe| component(p, 0).hypot(component(p, 1));
     let cell = |v: f64, e: Number, size: f64| rounded(v, last_place(e.0, size, IN_TABLE), size);
+    let unit = |unit: &str| if unit == "1" { String::new() } else { format!(" in {unit}") };
     let mut out = format!(
-        "\nProbes: potential in {}, gradient in {}, stream function in {} (conductivity 1)\n",
-        units.level, units.gradient, units.stream
+        "\nProbes: potential{}, gradient{}, stream function{} (for a conductivity of 1)\n",
+        unit(units.level),
+        unit(&units.gradient),
+        unit(units.stream)
     );
     let mut table =
         Table::new(["probe", "x", "y", "side", "s", "potential", "gradient x", "gradient y", "stream"]);
@@ -147,10 +149,10 @@ fn probes(document: &Document) -> String {
         };
         table.row([
             p.name.clone().unwrap_or_default(),
-            cell(p.at[0].0, Number(0.0), place),
-            cell(p.at[1].0, Number(0.0), place),
+            short(p.at[0].0),
+            short(p.at[1].0),
             p.side.clone().unwrap_or_default(),
-            p.s.map_or_else(String::new, |s| cell(s.0, Number(0.0), place)),
+            p.s.map_or_else(String::new, |s| short(s.0)),
             cell(p.potential.0, p.errors.potential, level),
             gradient(0),
             gradient(1),
@@ -192,11 +194,10 @@ fn computation(document: &Document) -> String {
     let (low, high) = gaps.fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), g| (l.min(g), h.max(g)));
     let decades = if low <= high { (high - low) / std::f64::consts::LN_10 } else { 0.0 };
     let text = format!(
-        "Map of a {} onto {} vertices, vertex {} at infinity; the largest gap between prevertices is \
-         10^{decades:.1} times the smallest. Side lengths are met to a relative {}. Headline numbers have a relative \
+        "Map of a {} onto the section; the prevertex of vertex {} lies at infinity, and of the gaps between \
+         the others the largest is 10^{decades:.1} times the smallest. Side lengths are met to a relative {}. Headline numbers have a relative \
          error of at most {}. The bounds come from {}.",
         document.map.canonical,
-        document.map.vertices,
         document.map.at_infinity,
         bound(document.map.residual.0),
         bound(document.error.0),

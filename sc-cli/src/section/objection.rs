@@ -90,6 +90,14 @@ pub enum ProbeFault {
         /// The largest distance on the side.
         high: f64,
     },
+    /// More points than can be meant.
+    #[error("with {probe} the file asks for more than {limit} points")]
+    TooMany {
+        /// The probe in words.
+        probe: String,
+        /// How many are allowed.
+        limit: usize,
+    },
     /// A side to infinity without the stretch that is wanted.
     #[error("{probe} runs along {side}, which goes to infinity, and does not say how far")]
     Endless {

@@ -28,6 +28,9 @@ pub struct PlacedProbe {
     pub places: Vec<Place>,
 }
 
+/// More points than this in one file are taken for a slip.
+const MAX_POINTS: usize = 2_000_000;
+
 /// Finds the places of all probes.
 ///
 /// # Errors
@@ -36,12 +39,19 @@ pub(super) fn place_probes(
     file: &SectionFile,
     outline: &Outline,
 ) -> Result<Vec<PlacedProbe>, Vec<Fault<Objection>>> {
-    let mut placed = Vec::new();
+    let mut placed: Vec<PlacedProbe> = Vec::new();
     let mut faults = Vec::new();
+    let mut room = MAX_POINTS;
     for (k, probe) in file.probes.iter().enumerate() {
         let search = Search { file, outline, probe, words: words(k, probe) };
         match search.places() {
+            Ok(places) if places.len() > room => {
+                let kind = ProbeFault::TooMany { probe: search.words, limit: MAX_POINTS };
+                faults.push(Fault::new(Objection::from(kind), probe.span).hint("ask for fewer points"));
+                break;
+            }
             Ok(places) => {
+                room -= places.len();
                 placed.push(PlacedProbe { name: probe.name.as_ref().map(|n| n.value.clone()), places });
             }
             Err(fault) => faults.push(*fault),
@@ -166,9 +176,12 @@ impl Search<'_> {
     fn along(&self, side: usize, [from, to]: [Option<f64>; 2], count: usize) -> Found<Vec<Place>> {
         let probe = self.words.clone();
         let words = side_words(self.file, self.outline, side);
-        let fault = |kind: ProbeFault, hint: &str| {
-            Box::new(Fault::new(Objection::from(kind), self.probe.span).hint(hint))
+        let span = match &self.probe.place {
+            ProbePlace::Along { side, .. } => side.span,
+            ProbePlace::Point { at, .. } => at.span,
         };
+        let fault =
+            |kind: ProbeFault, hint: &str| Box::new(Fault::new(Objection::from(kind), span).hint(hint));
         let (low, high) = self.range(side);
         let (from, to) = (from.unwrap_or(low), to.unwrap_or(high));
         if !(from.is_finite() && to.is_finite()) {
