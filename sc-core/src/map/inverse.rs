@@ -283,8 +283,10 @@ impl HalfPlaneMap {
             let change = if relative > MAX_CHANGE { change * (MAX_CHANGE / relative) } else { change };
             let ln_offset = here.ln_offset + change;
             let next = self.nearest_anchor(kept_above(HalfPlanePoint { anchor: here.anchor, ln_offset }));
-            // A new anchor may have cost digits: then one more step.
-            let settled = next.anchor == here.anchor;
+            // A new anchor at much less distance has cost digits: then one more step. (Between two equally near ones
+            // the iteration may swing for ever.)
+            let distance = |p: HalfPlanePoint| p.ln_offset.re + self.product().ln_unit(p.anchor);
+            let settled = next.anchor == here.anchor || distance(next) > distance(here) - 1.0;
             here = next;
             let rounding = 8.0 * f64::EPSILON * (target.norm() + f64::EPSILON * size);
             // After a step of relative size ε the error is of the order ε² of the image's scale.

@@ -20,8 +20,6 @@ const SQUARABLE: f64 = 1e140;
 const GROWTH: f64 = 1.5;
 /// Below this `ln` offset the other points' factors are constant to all digits.
 const NEAR_LN_OFFSET: f64 = -40.0;
-/// An anchor is changed for one at less than this part of the distance.
-const CLEARLY_NEARER: f64 = 0.9;
 /// Panels in one path. Each grows by 2.5, so 2000 span more than the range of `f64`.
 const MAX_PANELS: usize = 2000;
 
@@ -219,8 +217,7 @@ impl PowerProduct {
             else {
                 break;
             };
-            // Between two equally near points the present one stays, or an iteration would swing for ever.
-            if distance >= CLEARLY_NEARER * own {
+            if distance >= own {
                 break;
             }
             let scale = (view.ln_unit - self.views[best.index].ln_unit).exp();
