@@ -252,16 +252,23 @@ impl Solution {
 
     /// The place, not yet used, at which a line has ended.
     fn arrived_at(&self, line: &NetLine, places: &[Place], used: &[bool]) -> Option<usize> {
-        let n = self.section().outline().n();
+        let outline = self.section().outline();
+        let n = outline.n();
         let end = *line.points.last()?;
+        let tolerance = SAME_PLACE * outline.size();
+        let at_vertex = |k: usize| outline.point(k).is_some_and(|w| (w - end).norm() <= tolerance);
+        let shares = |side: usize, vertex: usize| vertex == side || vertex == (side + 1) % n;
+        // Beside a vertex a line may end on the one side and its place be on the other.
         let beside = |terminus: Terminus| match (line.end, terminus) {
-            (Terminus::Side(a), Terminus::Side(b)) | (Terminus::Vertex(a), Terminus::Vertex(b)) => a == b,
-            (Terminus::Vertex(a), Terminus::Side(b)) | (Terminus::Side(b), Terminus::Vertex(a)) => {
-                a == b || a == (b + 1) % n
+            (Terminus::Vertex(a), Terminus::Vertex(b)) => a == b,
+            (Terminus::Vertex(v), Terminus::Side(side)) | (Terminus::Side(side), Terminus::Vertex(v)) => {
+                shares(side, v)
+            }
+            (Terminus::Side(a), Terminus::Side(b)) => {
+                a == b || (0..2).any(|i| shares(b, (a + i) % n) && at_vertex((a + i) % n))
             }
             _ => false,
         };
-        let tolerance = SAME_PLACE * self.section().outline().size();
         (0..places.len())
             .filter(|&i| !used[i] && beside(places[i].terminus))
             .map(|i| (i, (places[i].image - end).norm()))
@@ -273,7 +280,12 @@ impl Solution {
     /// Flow lines, and the total flux.
     fn flow_lines(&self, increment: f64, options: &FlowNetOptions) -> (Vec<NetLine>, f64) {
         let pieces = boundary::pieces(self, Constant::Stream);
-        let (entering, leaving) = (self.stretches(&pieces, 1.0), self.stretches(&pieces, -1.0));
+        // A stretch whose flux is rounding, as deep in a dead end, counts for nothing.
+        let stretches = |sense: f64| -> Vec<Stretch> {
+            let all = self.stretches(&pieces, sense).into_iter();
+            all.filter(|s| s.flux.abs() > WHOLE * increment).collect()
+        };
+        let (entering, leaving) = (stretches(1.0), stretches(-1.0));
         let total = |s: &[Stretch]| s.iter().map(|s| s.flux.abs()).sum::<f64>();
         let through = total(&entering).max(total(&leaving));
         let stretches = if leaving.len() < entering.len() { leaving } else { entering };
@@ -338,7 +350,8 @@ impl Solution {
         let channels = stretch.flux.abs() / increment;
         let fraction = channels - (channels + WHOLE).floor();
         let whole = fraction < WHOLE;
-        let count = if whole { channels.round() as usize - 1 } else { channels.floor() as usize };
+        let count =
+            if whole { (channels.round() as usize).saturating_sub(1) } else { channels.floor() as usize };
         let count = count.min(MAX_FLOW_LINES);
         let last_is_beside_part = !(whole || unbounded[0] || unbounded[1]);
         let mut out = Vec::new();

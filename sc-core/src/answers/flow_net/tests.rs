@@ -131,8 +131,14 @@ fn lines_of_an_ell_end_where_they_should() {
 
 #[test]
 fn a_line_through_two_corners_of_a_symmetric_ell_is_straight() {
-    let net = ell().flow_net(&FlowNetOptions { drops: 2, ..FlowNetOptions::default() });
+    let solution = ell();
+    let net = solution.flow_net(&FlowNetOptions { drops: 2, ..FlowNetOptions::default() });
     let [line] = &net.equipotentials[..] else { panic!("{:?}", net.equipotentials) };
+    // A value that differs from that of the corners by rounding crosses beside them, and is still one line.
+    for ulps in [-40.0, -3.0, 2.0, 9.0, 300.0] {
+        let value = 0.5 * (1.0 + ulps * f64::EPSILON);
+        assert_eq!(solution.equipotentials(&[value], &FlowNetOptions::default()).len(), 1, "{ulps}");
+    }
     let (a, b) = (line.points[0], line.points[line.points.len() - 1]);
     assert!((a - b).norm() > 1.4, "{a} {b}");
     // In the right-angled corner φ is quadratic: 1e-11 of it is 3e-6 of the distance.
