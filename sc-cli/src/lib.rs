@@ -2,7 +2,8 @@
 //!
 //! ```text
 //! section file ──input──▶ SectionFile ──section──▶ Prepared ──answer──▶ Document ──▶ JSON
-//!                                                                          └──report──▶ text
+//!                                              │                           └──report──▶ text
+//!                                              └──figure──▶ Drawing ──▶ SVG, PNG
 //! ```
 //! Nothing below `commands` prints, exits or knows of arguments; nothing in `sc-core` knows of units, names or files.
 
@@ -10,6 +11,7 @@ pub mod answer;
 pub mod arguments;
 pub mod commands;
 pub mod destination;
+pub mod figure;
 pub mod input;
 pub mod outcome;
 pub mod report;
