@@ -7,8 +7,33 @@ use sc_cli::commands::solve::{Request, solve_text};
 use sc_cli::commands::starter::starter;
 use sc_cli::outcome::Status;
 
-const TRADES: [StarterTrade; 4] =
-    [StarterTrade::Seepage, StarterTrade::Heat, StarterTrade::Conductor, StarterTrade::Plain];
+/// A section that reaches infinity.
+const ENDLESS: &str = r#"
+let.d = 0.5
+outline = [
+  { away = 0, side = "low" },
+  { at = [0, 0], side = "face" },
+  { at = [0, "-d"] },
+  { at = [0, 0], side = "high" },
+  { away = 180, side = "rock" },
+  { at = [0, -1], side = "rock" },
+]
+[sides]
+high = { held = 1 }
+low  = { held = 0 }
+[[probe]]
+at = [3, -0.25]
+[[probe]]
+along = "low"
+from = -2
+to = 0
+count = 5
+"#;
+
+fn base(which: usize) -> &'static str {
+    use StarterTrade as T;
+    [T::Seepage, T::Heat, T::Conductor, T::Plain].get(which).map_or(ENDLESS, |&trade| starter(trade))
+}
 
 /// No number of the results is written as a float's own word for what is no number.
 fn assert_sound(text: &str) {
@@ -58,12 +83,12 @@ proptest! {
 
     #[test]
     fn a_file_with_other_characters_is_answered_or_refused(
-        which in 0..4_usize,
+        which in 0..5_usize,
         edits in prop::collection::vec(
             (any::<prop::sample::Index>(), 0..6_usize, "[\\[\\]{}\"'=.,\\\\#\n a-z0-9µ+*^/()-]{0,4}"), 1..4,
         ),
     ) {
-        let mut text = starter(TRADES[which]).to_owned();
+        let mut text = base(which).to_owned();
         for (index, removed, added) in edits {
             let chars: Vec<usize> = text.char_indices().map(|c| c.0).collect();
             let start = index.index(chars.len());
@@ -75,14 +100,14 @@ proptest! {
 
     #[test]
     fn a_file_with_other_numbers_is_answered_or_refused(
-        which in 0..4_usize,
+        which in 0..5_usize,
         edits in prop::collection::vec(
             (any::<prop::sample::Index>(), prop_oneof![
                 Just(0.0), Just(1e-300), Just(1e300), -5.0..5.0_f64, 1e-9..1e-6_f64, -1e6..1e6_f64,
             ]), 1..4,
         ),
     ) {
-        let mut text = starter(TRADES[which]).to_owned();
+        let mut text = base(which).to_owned();
         for (index, value) in edits {
             let places = numbers(&text);
             let place = places[index.index(places.len())].clone();

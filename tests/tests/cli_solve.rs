@@ -274,6 +274,49 @@ at = [0, -1]
     assert_eq!(document["probes"][2]["gradient"], "infinite");
 }
 
+/// A sheet pile to a depth in a layer of depth 1 without ends.
+fn sheet_pile(depth: f64) -> String {
+    format!(
+        r#"
+trade = "seepage"
+outline = [
+  {{ away = 0, side = "downstream" }},
+  {{ at = [0, 0], side = "face" }},
+  {{ at = [0, -{depth}] }},
+  {{ at = [0, 0], side = "upstream" }},
+  {{ away = 180, side = "rock" }},
+  {{ at = [0, -1], side = "rock" }},
+]
+[sides]
+upstream   = {{ held = 1 }}
+downstream = {{ held = 0 }}
+[[probe]]
+along = "downstream"
+from = -2
+to = 0
+count = 3
+"#
+    )
+}
+
+#[test]
+fn a_sheet_pile_in_an_endless_layer_has_its_closed_form() {
+    // q/(k h) = K(k')/(2 K(k)) with k = sin(π s/2T) (from memory): k = k' at half the depth.
+    let document = solved(&sheet_pile(0.5));
+    assert_rel("shape factor", number(&document, "/shape_factor/value"), 0.5, RTOL);
+    assert_eq!(document["sides"][0]["length"], "infinite");
+    assert!(document["warnings"].to_string().contains("goes to a vertex at infinity"));
+    assert_eq!(document["map"]["vertices"], 6);
+    // On a side from infinity s is measured from its finite end, and is negative.
+    assert_eq!(document["probes"][0]["at"], serde_json::json!([2.0, 0.0]));
+    assert_eq!(document["probes"][0]["s"], -2.0);
+    assert_eq!(document["corners"].as_array().unwrap().len(), 4);
+    let endless = sheet_pile(0.5).replace("from = -2\nto = 0\n", "");
+    let run = run_on(&endless, &["solve", "-"]);
+    assert_eq!(run.status, 1);
+    assert!(run.messages.contains("goes to infinity, and does not say how far"), "{}", run.messages);
+}
+
 #[test]
 fn set_gives_a_name_another_value() {
     let text = rectangle("let.w = 2", "1", "0").replace("[2, ", "[\"w\", ");

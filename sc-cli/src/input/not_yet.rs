@@ -5,16 +5,12 @@
 use super::fault::{Fault, FaultKind};
 use super::model::{Condition, Datum, Material, Region, SectionFile};
 use super::place::{Placed, Span};
-use sc_core::outline::Vertex;
 
 /// One fault for each use of what is not supported yet.
 pub(super) fn check(section: &SectionFile) -> Vec<Fault> {
     let mut faults = Vec::new();
     let mut refuse = |feature, span: Span| faults.push(Fault::new(FaultKind::NotYet { feature }, span));
 
-    for vertex in section.outline.iter().filter(|v| matches!(v.vertex, Vertex::Away { .. })) {
-        refuse("a vertex at infinity (`away`)", vertex.span);
-    }
     if let Some(first) = section.within.first() {
         let last = section.within.last().map_or(first.span, |v| v.span);
         refuse("an inner polygon (`within`)", first.span.join(last));

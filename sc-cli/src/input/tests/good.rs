@@ -4,14 +4,7 @@ use super::*;
 use sc_core::outline::{Point, Vertex};
 
 #[test]
-fn the_documented_example_is_read_whole_and_refused_only_for_its_vertices_at_infinity() {
-    assert_eq!(
-        faults(WEIR),
-        [
-            "14:3 a vertex at infinity (`away`) is not supported yet",
-            "20:3 a vertex at infinity (`away`) is not supported yet",
-        ]
-    );
+fn the_documented_example_is_read_whole() {
     let (reading, faults) = reader::read(WEIR, &[]);
     assert!(faults.is_empty());
     let section = reading.unwrap().section.value;
