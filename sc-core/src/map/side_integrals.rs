@@ -31,6 +31,8 @@ use std::sync::Arc;
 const GROWTH: f64 = 1.5;
 /// Distances that differ by `e^40` from a panel's scale are constants (or zero) on it, to all digits.
 const FAR: f64 = 40.0;
+/// A stretch of one power is taken in closed form if it spans more than this many e-folds.
+const WORTH_IT: f64 = 5.0;
 /// Work (sides × points) from which the sides are shared out over threads.
 const PARALLEL_WORK: usize = 6_000;
 
@@ -306,6 +308,10 @@ fn outward(
     let first = Panel { ln_end: end, start: 0.0, rule: &line_rules.at_point[anchor], self_exponent: 0.0 };
     add_panel(&mut out, &first, behind, ahead, &mut work, want_derivatives);
     while end < ln_end {
+        if let Some(reached) = add_power_stretch(&mut out, a, behind, ahead, end, ln_end, want_derivatives) {
+            end = reached;
+            continue;
+        }
         let start = end;
         let distance = if singular { start } else { ln_add(start, nearest_behind) };
         let grown = ln_add(start, distance + growth_ln);
@@ -316,6 +322,61 @@ fn outward(
         add_panel(&mut out, &panel, behind, ahead, &mut work, want_derivatives);
     }
     out
+}
+
+/// Where all points behind are either nearer than `e^−40` of the distance or farther than `e^40` of it, the integrand is
+/// one power and its integral is in closed form: a channel of any length costs one addition. Returns the (logarithmic)
+/// distance reached, or nothing if there is no such stretch from `ln_start` on that is worth it.
+fn add_power_stretch(
+    out: &mut Stretch,
+    self_exponent: f64,
+    behind: &[Seen],
+    ahead: &[Seen],
+    ln_start: f64,
+    ln_end: f64,
+    want_derivatives: bool,
+) -> Option<f64> {
+    let mut limit = ln_end;
+    let mut power = self_exponent;
+    let mut constant = 0.0;
+    for p in behind {
+        if p.ln_distance < ln_start - FAR {
+            power += p.exponent;
+        } else if p.ln_distance > ln_start + FAR {
+            limit = limit.min(p.ln_distance - FAR);
+            constant += p.exponent * p.ln_distance;
+        } else {
+            return None;
+        }
+    }
+    for p in ahead {
+        limit = limit.min(p.ln_distance - FAR);
+        constant += p.exponent * p.ln_distance;
+    }
+    if limit < ln_start + WORTH_IT {
+        return None;
+    }
+    // ∫ t^power dt from e^ln_start to e^limit, as e^scale · total.
+    let q = 1.0 + power;
+    let length = limit - ln_start;
+    let (scale, total) = if (q * length).abs() < 1e-8 {
+        (q * ln_start, length * (1.0 + 0.5 * q * length))
+    } else if q > 0.0 {
+        (q * limit, -f64::exp_m1(-q * length) / q)
+    } else {
+        (q * ln_start, f64::exp_m1(q * length) / q)
+    };
+    let factor = out.rescale(constant + scale);
+    out.total += factor * total;
+    if want_derivatives {
+        for (b, p) in out.behind.iter_mut().zip(behind).filter(|(_, p)| p.ln_distance > ln_start) {
+            *b += factor * total * (p.ln_reference - p.ln_distance).exp();
+        }
+        for (b, p) in out.ahead.iter_mut().zip(ahead) {
+            *b += factor * total * (p.ln_reference - p.ln_distance).exp();
+        }
+    }
+    Some(limit)
 }
 
 /// The stretch from distance `e^ln_start` to infinity, in `v = 1/t`.

@@ -5,6 +5,9 @@ use crate::map::gap_line::GapLine;
 use crate::map::side_integrals::{RuleSet, side_integrals};
 use crate::outline::Point;
 
+/// Four corners on two facing sides are in a channel if they span this many times its width.
+const CHANNEL_ASPECT: f64 = 2.0;
+
 /// One step of the placing of prevertices: from the triangle `(a, b, c)` across its edge `(a, b)` to `d` between them.
 #[derive(Debug, Clone, Copy)]
 struct Placement {
@@ -34,6 +37,9 @@ pub(crate) struct CrossRatioStart {
     wanted: Vec<f64>,
     /// The present guess of the prevertices' cross-ratios.
     guess: Vec<f64>,
+    /// Whether a cross-ratio belongs to a quadrilateral of a long channel, whose guess is as good as it gets: there
+    /// the image hardly moves with the cross-ratio, and the simple iteration would crawl.
+    in_channel: Vec<bool>,
     /// Outward directions of the sides.
     directions: Vec<Point>,
 }
@@ -95,8 +101,13 @@ impl CrossRatioStart {
             }
         }
         let wanted: Vec<f64> = placements.iter().map(|p| p.ln_cross_ratio(&points)).collect();
+        let channel: Vec<Option<f64>> = placements
+            .iter()
+            .map(|p| channel_guess(outline, [p.a, p.b, p.c, p.d].map(|k| (at_infinity + 1 + k) % n)))
+            .collect();
         CrossRatioStart {
-            guess: wanted.clone(),
+            guess: channel.iter().zip(&wanted).map(|(c, w)| c.unwrap_or(*w)).collect(),
+            in_channel: channel.iter().map(Option::is_some).collect(),
             points,
             exponents,
             placements,
@@ -156,7 +167,8 @@ impl CrossRatioStart {
             w += self.directions[k] * (ln[k] - high).exp();
         }
         let mut largest = 0.0_f64;
-        for ((p, guess), wanted) in self.placements.iter().zip(&mut self.guess).zip(&self.wanted) {
+        let free = self.placements.iter().zip(&mut self.guess).zip(&self.wanted).zip(&self.in_channel);
+        for ((p, guess), wanted) in free.filter(|(_, fixed)| !**fixed).map(|(f, _)| f) {
             let change = wanted - p.ln_cross_ratio(&image);
             // An image so crowded that corners coincide says nothing of this quadrilateral.
             if change.is_finite() {
@@ -166,6 +178,74 @@ impl CrossRatioStart {
         }
         largest
     }
+}
+
+/// The `ln` cross-ratio of the prevertices of four corners `(a, b, c, d)` that lie on two facing sides, if they are far
+/// apart against the distance of the sides.
+///
+/// Between two lines that meet at the angle `θ` in `O` the sector's map `ζ = ±exp((π/θ) ln r)` holds, `r` the distance
+/// from `O`; between parallel lines at distance `h`, `ζ = ±exp(π x/h)`. Away from the ends of the stretch the error
+/// falls as `exp(−π × distance/h)`.
+fn channel_guess(outline: &SplitOutline, corners: [usize; 4]) -> Option<f64> {
+    let n = outline.corners.len();
+    let sides_of = |k: usize| {
+        let before = outline.side[(k + n - 1) % n];
+        [before, outline.side[k]]
+    };
+    // Two sides that carry all four corners.
+    let candidates: Vec<usize> = corners.iter().flat_map(|&k| sides_of(k)).collect();
+    let (first, second) = candidates.iter().enumerate().find_map(|(i, &p)| {
+        candidates[i + 1..]
+            .iter()
+            .find(|&&q| q != p && corners.iter().all(|&k| sides_of(k).contains(&p) || sides_of(k).contains(&q)))
+            .map(|&q| (p, q))
+    })?;
+    let span = |side: usize| {
+        let k = outline.side.iter().position(|&s| s == side)?;
+        let last = outline.side.iter().rposition(|&s| s == side)?;
+        // A side that wraps round the end of the list starts after its last other piece.
+        let start = if k == 0 && last == n - 1 { outline.side.iter().rposition(|&s| s != side)? + 1 } else { k };
+        let a = outline.corners[start % n];
+        Some((a, (outline.corners[(start + 1) % n] - a).unscale((outline.corners[(start + 1) % n] - a).norm())))
+    };
+    let ((p, u), (q, v)) = (span(first)?, span(second)?);
+    // The second side runs back: u and −v point the same way along the channel.
+    let axis = {
+        let sum = u - v;
+        if sum.norm() < 1.0 { return None } else { sum / sum.norm() }
+    };
+    let origin = outline.corners[corners[0]];
+    let along = |z: Point| ((z - origin) * axis.conj()).re;
+    // Distance of the lines as a function of the place along the axis: h(x) = h_0 + slope x.
+    let across = |z: Point, d: Point, x: f64| {
+        let t = (x - along(z)) / (d * axis.conj()).re;
+        ((z + d * t - origin) * axis.conj()).im
+    };
+    let height = |x: f64| across(q, -v, x) - across(p, u, x);
+    let xs: Vec<f64> = corners.iter().map(|&k| along(outline.corners[k])).collect();
+    let (low, high) = xs.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |m, &x| (m.0.min(x), m.1.max(x)));
+    let (h_low, h_high) = (height(low), height(high));
+    let smallest = h_low.min(h_high);
+    if !(smallest > 0.0 && high - low > CHANNEL_ASPECT * h_low.max(h_high)) {
+        return None;
+    }
+    // π ∫ dx/h from the low end: for a linear h, Δx ln(h/h_low)/(h − h_low).
+    let xi = |x: f64| {
+        let (d, h) = (x - low, height(x));
+        let r = (h - h_low) / h_low;
+        let mean = if r.abs() < 1e-6 { 1.0 - 0.5 * r } else { r.ln_1p() / r };
+        std::f64::consts::PI * d / h_low * mean
+    };
+    let place: Vec<(f64, bool)> =
+        corners.iter().zip(&xs).map(|(&k, &x)| (xi(x), sides_of(k).contains(&first))).collect();
+    let ln = |i: usize, j: usize| {
+        let ((s, on), (t, other)) = (place[i], place[j]);
+        let ratio = (-(s - t).abs()).exp();
+        s.max(t) + if on == other { (-ratio).ln_1p() } else { ratio.ln_1p() }
+    };
+    let [a, b, c, d] = [0, 1, 2, 3];
+    let value = ln(d, a) + ln(c, b) - ln(d, b) - ln(c, a);
+    value.is_finite().then_some(value)
 }
 
 impl Placement {

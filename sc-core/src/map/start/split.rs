@@ -23,6 +23,8 @@ pub(crate) struct SplitOutline {
     pub(crate) alpha: Vec<f64>,
     /// The vertex of the outline that a corner is, if it was not added.
     pub(crate) original: Vec<Option<usize>>,
+    /// The side of the outline that the piece leaving a corner is part of.
+    pub(crate) side: Vec<usize>,
     pub(crate) triangles: Triangles,
 }
 
@@ -31,6 +33,8 @@ struct Corner {
     at: Point,
     alpha: f64,
     original: Option<usize>,
+    /// The outline's side that leaves here, or that an added corner lies on.
+    side: usize,
     /// The side leaving this corner is not to be split any more.
     settled: bool,
 }
@@ -54,6 +58,7 @@ pub(crate) fn split_sides(outline: &[Point], alpha: &[f64], parts: f64) -> Resul
     Ok(SplitOutline {
         alpha: corners.iter().map(|c| c.alpha).collect(),
         original: corners.iter().map(|c| c.original).collect(),
+        side: corners.iter().map(|c| c.side).collect(),
         corners: points(&corners),
         triangles,
     })
@@ -75,12 +80,12 @@ fn cut_sharp_corners(outline: &[Point], alpha: &[f64]) -> Vec<Corner> {
         let (a, b) = (outline[k], outline[(k + 1) % n]);
         let direction = (b - a) / length(k);
         let (start, end) = (cut_at(k), cut_at((k + 1) % n));
-        out.push(Corner { at: a, alpha: alpha[k], original: Some(k), settled: start > 0.0 });
+        out.push(Corner { at: a, alpha: alpha[k], original: Some(k), side: k, settled: start > 0.0 });
         if start > 0.0 {
-            out.push(Corner { at: a + direction * start, alpha: 1.0, original: None, settled: false });
+            out.push(Corner { at: a + direction * start, alpha: 1.0, original: None, side: k, settled: false });
         }
         if end > 0.0 {
-            out.push(Corner { at: b - direction * end, alpha: 1.0, original: None, settled: true });
+            out.push(Corner { at: b - direction * end, alpha: 1.0, original: None, side: k, settled: true });
         }
     }
     out
@@ -109,13 +114,16 @@ fn match_wall_faces(corners: &[Corner]) -> Vec<Corner> {
             at,
             alpha: 1.0,
             original: None,
+            side: corners[k].side,
             settled: corners[k].settled,
         }));
     }
     out
 }
 
-/// Which sides face something nearer than a third of their length; both faces of a wall are split alike.
+/// Which sides face something nearer than a third of their length; both faces of a wall are split alike. A piece in a
+/// long empty channel, with no corner nearer than its own length, need not be split: see the channel guess of the
+/// cross-ratios. Pieces then grow geometrically with the distance from the channel's ends.
 fn long_sides(corners: &[Corner], triangles: &Triangles) -> Vec<bool> {
     let n = corners.len();
     let mut long: Vec<bool> = (0..n)
@@ -128,7 +136,8 @@ fn long_sides(corners: &[Corner], triangles: &Triangles) -> Vec<bool> {
             let (a, b) = (corners[k].at, corners[(k + 1) % n].at);
             let side = b - a;
             let along = (((apex - a) * side.conj()).re / side.norm_sqr()).clamp(0.0, 1.0);
-            (apex - (a + side * along)).norm() < NEARNESS * side.norm()
+            let faces_near = (apex - (a + side * along)).norm() < NEARNESS * side.norm();
+            faces_near && nearest_bend(corners, a, b) < side.norm() * (1.0 - 1e-9)
         })
         .collect();
     let key = |p: Point, q: Point| [p.re, p.im, q.re, q.im].map(|v| (v + 0.0).to_bits());
@@ -143,6 +152,19 @@ fn long_sides(corners: &[Corner], triangles: &Triangles) -> Vec<bool> {
     long
 }
 
+/// Distance from a piece of a side to the nearest corner that is not flat.
+fn nearest_bend(corners: &[Corner], a: Point, b: Point) -> f64 {
+    let side = b - a;
+    corners
+        .iter()
+        .filter(|c| c.alpha != 1.0)
+        .map(|c| {
+            let along = (((c.at - a) * side.conj()).re / side.norm_sqr()).clamp(0.0, 1.0);
+            (c.at - (a + side * along)).norm()
+        })
+        .fold(f64::INFINITY, f64::min)
+}
+
 fn cut(corners: &[Corner], long: &[bool], parts: f64) -> Vec<Corner> {
     let n = corners.len();
     let mut out = Vec::with_capacity(2 * n);
@@ -151,7 +173,7 @@ fn cut(corners: &[Corner], long: &[bool], parts: f64) -> Vec<Corner> {
         if long[k] {
             let (a, b) = (corners[k].at, corners[(k + 1) % n].at);
             for at in [a + (b - a) / parts, b - (b - a) / parts] {
-                out.push(Corner { at, alpha: 1.0, original: None, settled: false });
+                out.push(Corner { at, alpha: 1.0, original: None, side: corners[k].side, settled: false });
             }
         }
     }
