@@ -37,6 +37,7 @@ and run
 
     prevertex check corner.toml              # what was understood
     prevertex solve corner.toml              # the heat flow per metre, with its error bound
+    prevertex draw corner.toml --out net.svg # the isotherms and heat flow lines
     prevertex solve corner.toml --json       # the same for a script
     prevertex starter seepage                # a commented section of another trade
 
@@ -54,6 +55,8 @@ pub enum Command {
     Solve(SolveArguments),
     /// Read and validate a section without solving it, and show what was understood
     Check(CheckArguments),
+    /// Draw a section: its conditions, or its flow net with equal drops, as SVG or PNG
+    Draw(DrawArguments),
     /// Print a commented section to start from
     Starter(StarterArguments),
     /// List the units a section file may use
@@ -107,6 +110,41 @@ pub struct CheckArguments {
     /// The section.
     #[command(flatten)]
     pub section: SectionArguments,
+}
+
+/// What is drawn.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum FigureKind {
+    /// The outline with its conditions and probes
+    Section,
+    /// The flow net
+    Net,
+}
+
+/// Arguments of `draw`.
+#[derive(Debug, Clone, Args)]
+pub struct DrawArguments {
+    /// The section.
+    #[command(flatten)]
+    pub section: SectionArguments,
+    /// The picture; the end of its name, .svg or .png, tells its kind
+    #[arg(long, value_name = "FILE")]
+    pub out: PathBuf,
+    /// What is drawn
+    #[arg(long, value_enum, default_value = "net")]
+    pub figure: FigureKind,
+    /// Number of equal drops between the highest and the lowest level [default: some sixty cells]
+    #[arg(long, value_name = "N", value_parser = drops)]
+    pub drops: Option<usize>,
+    /// Width of the picture in pixels
+    #[arg(long, value_name = "PIXELS", value_parser = pixels, default_value = "1000")]
+    pub width: u32,
+    /// Number the vertices, as the outline lists them, from 0
+    #[arg(long)]
+    pub vertex_numbers: bool,
+    /// Replace the file if it exists
+    #[arg(long)]
+    pub replace: bool,
 }
 
 /// A trade that has a starter.
@@ -179,6 +217,27 @@ fn tolerance(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(x) if 0.0 < x && x < 1.0 => Ok(x),
         _ => Err("a relative error is a number above 0 and below 1, such as 1e-6".to_owned()),
+    }
+}
+
+/// More drops than this cannot be told apart on a page.
+const MAX_DROPS: usize = 1000;
+
+fn drops(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(n) if 1 <= n && n <= MAX_DROPS => Ok(n),
+        _ => Err(format!("the number of drops is a whole number from 1 to {MAX_DROPS}")),
+    }
+}
+
+/// Widths of a picture.
+const MIN_PIXELS: u32 = 200;
+const MAX_PIXELS: u32 = 6000;
+
+fn pixels(text: &str) -> Result<u32, String> {
+    match text.parse::<u32>() {
+        Ok(n) if MIN_PIXELS <= n && n <= MAX_PIXELS => Ok(n),
+        _ => Err(format!("the width is a whole number of pixels from {MIN_PIXELS} to {MAX_PIXELS}")),
     }
 }
 

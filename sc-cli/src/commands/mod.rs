@@ -4,6 +4,7 @@ pub mod answers;
 pub mod check;
 #[cfg(feature = "completions")]
 pub mod completions;
+pub mod draw;
 #[cfg(feature = "manual")]
 pub mod man;
 mod read;
@@ -22,6 +23,7 @@ pub fn run(arguments: &Arguments) -> Outcome {
     match &arguments.command {
         Command::Solve(a) => solve::run(a),
         Command::Check(a) => check::run(a),
+        Command::Draw(a) => draw::run(a),
         Command::Starter(a) => starter::run(a),
         Command::Units(a) => units::run(a),
         Command::Answers => answers::run(),

@@ -18,6 +18,8 @@ const LEADER: Pen = Pen { width: 0.8, tone: 0.25, dash: None };
 /// Distance and length of hatching strokes, in em.
 const HATCH_STEP: f64 = 0.75;
 const HATCH_LENGTH: f64 = 0.55;
+/// What covering a pixel of the outline costs a label, for one of a line of the net.
+const OUTLINE: f64 = 6.0;
 /// Line spacing of labels, in em.
 const LABEL_LEADING: f64 = 1.2;
 /// How far a side to infinity is drawn beyond its vertex, in sizes of the section.
@@ -66,6 +68,7 @@ struct Held {
 pub fn section_figure(subject: &Subject<'_>, sheet: &Sheet) -> Drawing {
     let mut page = page_for(subject, sheet);
     draw_conditions(subject, sheet, &mut page);
+    draw_probes(subject, &mut page);
     let mut caption = Vec::new();
     let em = page.em;
     caption.extend(title(subject, em));
@@ -219,7 +222,7 @@ pub(super) fn draw_conditions(subject: &Subject<'_>, sheet: &Sheet, page: &mut P
         };
         let parts = page.line(&[a, b], scaled(pen));
         for part in &parts {
-            page.labels.avoid(part);
+            page.labels.avoid(part, OUTLINE);
         }
         if !held && !is_wall(outline, k) {
             parts.iter().for_each(|part| hatch(outline, k, part, page));
@@ -228,7 +231,6 @@ pub(super) fn draw_conditions(subject: &Subject<'_>, sheet: &Sheet, page: &mut P
     for held in held_runs(subject) {
         letter_held(subject, &held, run_off, page);
     }
-    draw_probes(subject, page);
     if sheet.vertex_numbers {
         number_vertices(outline, page);
     }
@@ -256,7 +258,7 @@ fn hatch(outline: &Outline, side: usize, part: &[PagePoint], page: &mut Page) {
         let middle = [0.5 * (from[0] + to[0]), 0.5 * (from[1] + to[1])];
         let inside = |p| outline.contains(page.in_plane(p)) == Containment::Inside;
         if !(inside(to) || inside(middle)) {
-            page.labels.avoid(&[from, to]);
+            page.labels.avoid(&[from, to], 1.0);
             page.marks.push(Mark::Line(vec![from, to], HATCH));
         }
     }

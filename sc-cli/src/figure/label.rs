@@ -72,7 +72,7 @@ impl Box2 {
 pub(super) struct Labels {
     frame: Box2,
     boxes: Vec<Box2>,
-    lines: Vec<[PagePoint; 2]>,
+    lines: Vec<([PagePoint; 2], f64)>,
 }
 
 /// A label that covers another, or leaves the page, is never wanted.
@@ -83,9 +83,9 @@ impl Labels {
         Labels { frame, boxes: Vec::new(), lines: Vec::new() }
     }
 
-    /// Lines that labels should keep off.
-    pub(super) fn avoid(&mut self, line: &[PagePoint]) {
-        self.lines.extend(line.windows(2).map(|w| [w[0], w[1]]));
+    /// Lines that labels should keep off; covering a pixel of one costs its weight.
+    pub(super) fn avoid(&mut self, line: &[PagePoint], weight: f64) {
+        self.lines.extend(line.windows(2).map(|w| ([w[0], w[1]], weight)));
     }
 
     /// A place that is taken.
@@ -97,7 +97,8 @@ impl Labels {
     pub(super) fn cost(&self, place: &Box2) -> f64 {
         let others = self.boxes.iter().filter(|b| b.meets(place)).count() as f64;
         let outside = if self.frame.holds(place) { 0.0 } else { 1.0 };
-        let covered: f64 = self.lines.iter().map(|l| place.length_inside(l[0], l[1])).sum();
+        let covered: f64 =
+            self.lines.iter().map(|(l, weight)| weight * place.length_inside(l[0], l[1])).sum();
         FORBIDDEN * (others + outside) + covered
     }
 
@@ -126,7 +127,7 @@ mod tests {
         let frame = Box2 { low: [0.0, 0.0], high: [100.0, 100.0] };
         let mut labels = Labels::new(frame);
         labels.take(Box2::about([50.0, 50.0], 20.0, 10.0));
-        labels.avoid(&[[0.0, 80.0], [100.0, 80.0]]);
+        labels.avoid(&[[0.0, 80.0], [100.0, 80.0]], 1.0);
         let places =
             [[50.0, 52.0], [99.0, 20.0], [50.0, 80.0], [50.0, 30.0]].map(|p| Box2::about(p, 20.0, 10.0));
         assert_eq!(labels.best(places, 0.1).map(|b| b.0), Some(3));

@@ -21,7 +21,7 @@ mod tests;
 pub use clip::Window;
 pub use conditions::section_figure;
 pub use drawing::{Align, Drawing, Lettering, Mark, PagePoint, Pen};
-pub use net::net_figure;
+pub use net::{net_figure, round_drops};
 pub use render::RenderError;
 
 use crate::input::Trade;

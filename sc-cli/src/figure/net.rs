@@ -7,7 +7,7 @@ use super::number::{decimals_of_step, fixed, power_of_ten, tidy};
 use super::page::{CaptionLine, Page};
 use super::render::text_width;
 use super::{Sheet, Subject, with_unit};
-use sc_core::answers::{Bounded, FlowNet};
+use sc_core::answers::{Bounded, FlowNet, suitable_drops};
 
 const FLOW_LINE: Pen = Pen::solid(1.7);
 const PART_CHANNEL: Pen = Pen { width: 1.7, tone: 0.0, dash: Some([9.0, 6.0]) };
@@ -50,7 +50,7 @@ pub fn net_figure(
     for line in &net.flow_lines {
         let pen = if line.beside_part_channel { PART_CHANNEL } else { FLOW_LINE };
         for part in page.line(&line.points, scaled(pen)) {
-            page.labels.avoid(&part);
+            page.labels.avoid(&part, 1.0);
         }
     }
     let lettered = page.marks.len();
@@ -74,6 +74,21 @@ pub fn net_figure(
         }))
         .collect();
     page.finish(subject.length_unit, &caption)
+}
+
+/// A number of drops with some sixty cells, of those near to it the one with the roundest drop; ten if there is no shape
+/// factor to go by.
+pub fn round_drops(shape_factor: Option<f64>, range: f64) -> usize {
+    let ideal = shape_factor.map_or(10, suitable_drops);
+    let cost = |d: usize| {
+        let drop = range / d as f64;
+        let digits = (1..=4).find(|&digits| {
+            let unit = 10_f64.powf(digits as f64 - 1.0 - drop.log10().floor());
+            (drop * unit - (drop * unit).round()).abs() < 1e-9 * drop * unit
+        });
+        (d as f64 / ideal as f64).ln().abs() + 0.12 * digits.unwrap_or(5) as f64
+    };
+    (4..=100).min_by(|&a, &b| cost(a).total_cmp(&cost(b))).unwrap_or(ideal)
 }
 
 fn statements(subject: &Subject<'_>, net: &FlowNet, shape_factor: Option<Bounded>) -> Vec<String> {
@@ -149,7 +164,7 @@ fn letter_values(lines: &[Drawn], increment: f64, lowest: f64, page: &mut Page) 
     let decimals = decimals_of_step(lowest, increment);
     for line in lines {
         for part in &line.parts {
-            page.labels.avoid(part);
+            page.labels.avoid(part, 1.0);
         }
     }
     for stride in STRIDES {
@@ -202,4 +217,18 @@ fn along(line: &[PagePoint], mut s: f64) -> Option<PagePoint> {
         s -= length;
     }
     line.last().copied()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn drops_are_round_numbers_of_the_level() {
+        // 25 K: ten drops of 2.5 K rather than twelve of 2.08 K.
+        assert_eq!(round_drops(Some(0.39), 25.0), 10);
+        for (s, range) in [(Some(0.05), 1.0), (Some(3.0), 2.4), (None, 0.0), (Some(f64::NAN), f64::NAN)] {
+            assert!((4..=100).contains(&round_drops(s, range)), "{s:?} {range}");
+        }
+    }
 }

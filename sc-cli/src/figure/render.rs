@@ -8,7 +8,7 @@ use plotters::style::{Color, FontFamily, FontStyle, RGBColor, ShapeStyle, TextSt
 use std::sync::OnceLock;
 use thiserror::Error;
 
-/// DejaVu Sans, cut to Latin, Greek and mathematical signs.
+/// A sans-serif font (`DejaVu Sans`), cut to Latin, Greek and mathematical signs.
 static FONT: &[u8] = include_bytes!("../../assets/DejaVuSans-subset.ttf");
 /// Parts of a pixel in an SVG.
 const SVG_GRID: f64 = 20.0;
