@@ -20,7 +20,9 @@ const SAMPLE_STEP: f64 = 0.6;
 const KEEP_OFF: f64 = 4e-3;
 /// Depth, as `ln offset`, in a corner where levels touch at which equipotentials begin and end: `φ` is there a function
 /// of the angle alone to `e^−8`, and nearer to the pole the integral of the field loses digits.
-pub(super) const DEEP: f64 = 8.0;
+const DEEP: f64 = 8.0;
+/// The same where they touch at infinity: farther out than this many sizes no line is begun.
+const FAR_OFF: f64 = 3.0;
 /// Safeguarded Newton steps: bisection alone takes 55 from the widest bracket to rounding.
 const MAX_ROOT_STEPS: usize = 120;
 
@@ -114,20 +116,41 @@ pub(super) fn beyond(solution: &Solution, anchor: usize) -> f64 {
     span.max(0.0)
 }
 
+/// `Re ln offset` at which an equipotential begins and ends where different levels touch.
+pub(super) fn depth(solution: &Solution, j: usize, anchor: usize) -> f64 {
+    let n = solution.section().outline().n();
+    if solution.section().outline().point(solution.map().vertex_of(j)).is_none() {
+        nearest(solution, j, anchor)
+    } else if j < n - 1 {
+        -DEEP
+    } else {
+        beyond(solution, anchor) + DEEP
+    }
+}
+
 /// `Re ln offset` nearest to a vertex (line index; `n − 1` is infinity) that is used on the sides beside it.
 fn nearest(solution: &Solution, j: usize, anchor: usize) -> f64 {
     let map = solution.map();
     let n = map.outline().n();
-    let alpha = map.outline().alpha()[map.vertex_of(j)];
-    if !jumps(solution, j) || alpha <= 0.0 {
+    if !jumps(solution, j) {
         return if j < n - 1 { NEAREST } else { remote(solution, anchor) };
     }
-    let ln_distance = (KEEP_OFF * map.outline().size() * alpha).ln();
+    let alpha = map.outline().alpha()[map.vertex_of(j)];
+    // f ≈ F t^α/α beside a corner, F ln t in a channel; t falls toward a finite prevertex and grows toward infinity.
+    let ln_f = if j < n - 1 { map.ln_leading(j) } else { map.ln_scale() };
+    let size = map.outline().size();
+    let ln_t = if alpha == 0.0 {
+        -(FAR_OFF * size / ln_f.exp()).clamp(1.0, -NEAREST)
+    } else {
+        let distance = if alpha > 0.0 { KEEP_OFF } else { FAR_OFF };
+        ((distance * size * alpha.abs()).ln() - ln_f) / alpha
+    };
     let unit = map.product().ln_unit(anchor);
     if j < n - 1 {
-        (ln_distance - map.ln_leading(j)) / alpha - unit
+        // In a channel the exponent is that of the logarithm: t counts in the anchor's unit.
+        if alpha == 0.0 { ln_t } else { ln_t - unit }
     } else {
-        (map.ln_scale() - ln_distance) / alpha - unit
+        (if alpha == 0.0 { beyond(solution, anchor) } else { -unit }) - ln_t
     }
 }
 

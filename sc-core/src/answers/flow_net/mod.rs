@@ -156,7 +156,7 @@ impl Solution {
             let mut lines = Vec::new();
             let mut used = vec![false; places.len()];
             for i in 0..places.len() {
-                if used[i] {
+                if used[i] || !tracer.reaches(places[i].image) {
                     continue;
                 }
                 used[i] = true;
@@ -205,7 +205,7 @@ impl Solution {
             let terminus = Terminus::Side(self.map().vertex_of(piece.side));
             Some(Place { at, terminus, image: self.map().forward(at), heading })
         });
-        found.collect()
+        found.filter(|place| place.image.is_finite()).collect()
     }
 
     /// The vertices where different levels touch and the value lies between them.
@@ -220,14 +220,11 @@ impl Solution {
                 return None;
             }
             let vertex = self.map().vertex_of(j);
-            let image = self.section().outline().point(vertex)?;
-            let (anchor, ln, angle, away) = if j < n - 1 {
-                (j, -boundary::DEEP, PI * part, 1.0)
-            } else {
-                let anchor = n - 2;
-                (anchor, boundary::beyond(self, anchor) + boundary::DEEP, PI * (1.0 - part), -1.0)
-            };
+            let (anchor, angle, away) =
+                if j < n - 1 { (j, PI * part, 1.0) } else { (n - 2, PI * (1.0 - part), -1.0) };
+            let ln = boundary::depth(self, j, anchor);
             let at = HalfPlanePoint { anchor, ln_offset: Complex64::new(ln, angle) };
+            let image = self.section().outline().point(vertex).unwrap_or_else(|| self.map().forward(at));
             let heading = Complex64::new(away, 0.0);
             Some(Place { at, terminus: Terminus::Vertex(vertex), image, heading })
         });
@@ -269,9 +266,11 @@ impl Solution {
             }
             _ => false,
         };
+        // From a vertex at infinity a value has but one line.
+        let at_infinity = |t: Terminus| matches!(t, Terminus::Vertex(v) if outline.point(v).is_none());
         (0..places.len())
             .filter(|&i| !used[i] && beside(places[i].terminus))
-            .map(|i| (i, (places[i].image - end).norm()))
+            .map(|i| (i, if at_infinity(line.end) { 0.0 } else { (places[i].image - end).norm() }))
             .filter(|&(_, distance)| distance <= tolerance)
             .min_by(|a, b| a.1.total_cmp(&b.1))
             .map(|(i, _)| i)
@@ -292,9 +291,11 @@ impl Solution {
         let close = CLOSE * increment;
         let wanted: Vec<(Place, f64, bool)> =
             stretches.iter().flat_map(|s| self.begun_on(s, increment, close)).collect();
-        let lines = wanted.par_iter().map(|(place, value, beside_part_channel)| {
+        let lines = wanted.par_iter().filter_map(|(place, value, beside_part_channel)| {
             let tracer = self.tracer(Constant::Stream, *value, close, options);
-            NetLine { beside_part_channel: *beside_part_channel, ..self.line(&tracer, place) }
+            tracer
+                .reaches(place.image)
+                .then(|| NetLine { beside_part_channel: *beside_part_channel, ..self.line(&tracer, place) })
         });
         (lines.collect(), through)
     }

@@ -216,3 +216,72 @@ fn profile_along_a_side_of_a_square_is_linear() {
     }
     assert!(square().along_side(9, 5).is_err());
 }
+
+fn solved_vertices(vertices: &[Vertex], electrodes: &[Option<usize>], levels: &[f64]) -> Solution {
+    let outline = Outline::new(vertices).unwrap().value;
+    let (section, _) = Section::new(outline, electrodes, levels).unwrap();
+    Solution::solve(section, &SolveOptions::default()).unwrap()
+}
+
+#[test]
+fn a_sheet_pile_to_half_the_layer_has_half_as_many_channels_as_drops() {
+    // q/(kH) = 1/2 exactly, by the symmetry that exchanges held and insulated sides.
+    let at = Vertex::at;
+    let vertices =
+        [Vertex::away(0.0), at(0.0, 0.0), at(0.0, -0.5), at(0.0, 0.0), Vertex::away(180.0), at(0.0, -1.0)];
+    let solution = solved_vertices(&vertices, &[Some(0), None, None, Some(1), None, None], &[0.0, 1.0]);
+    let net = solution.flow_net(&FlowNetOptions::default());
+    assert!((net.n_channels - 5.0).abs() < 1e-9, "{}", net.n_channels);
+    assert_eq!((net.equipotentials.len(), net.flow_lines.len()), (9, 4));
+    for line in &net.equipotentials {
+        // The one in the middle ends at the flat vertex of the base.
+        let base = [Terminus::Side(4), Terminus::Side(5), Terminus::Vertex(5)];
+        let wall = [Terminus::Side(1), Terminus::Side(2), Terminus::Vertex(2)];
+        let ends = [line.start, line.end];
+        assert!(ends.iter().any(|e| base.contains(e)) && ends.iter().any(|e| wall.contains(e)), "{ends:?}");
+    }
+    for line in &net.flow_lines {
+        assert_eq!(sides_of(line), (0, 3));
+    }
+    assert_on_value(&solution, &net);
+}
+
+#[test]
+fn a_stepped_channel_between_two_levels_has_lines_from_end_to_end() {
+    let at = Vertex::at;
+    let vertices = [Vertex::away(0.0), at(0.0, 1.0), at(0.0, 2.0), Vertex::away(180.0), at(0.0, 0.0)];
+    let solution = solved_vertices(&vertices, &[Some(0), Some(0), Some(0), Some(1), Some(1)], &[1.0, 0.0]);
+    let net = solution.flow_net(&FlowNetOptions { drops: 4, ..FlowNetOptions::default() });
+    let ends: Vec<_> = net.equipotentials.iter().map(|l| (l.start, l.end, l.points.len())).collect();
+    assert_eq!(net.equipotentials.len(), 3, "{ends:?}");
+    for line in &net.equipotentials {
+        assert!(matches!((line.start, line.end), (Terminus::Vertex(_), Terminus::Vertex(_))), "{ends:?}");
+        let x = line.points.iter().map(|z| z.re);
+        assert!(x.clone().fold(f64::INFINITY, f64::min) < -2.0 && x.fold(f64::NEG_INFINITY, f64::max) > 2.0);
+    }
+    assert!(net.flow_lines.len() > 4 && net.flow_lines.len() < 100, "{}", net.flow_lines.len());
+    assert!(net.flow_lines.iter().all(|l| matches!(l.end, Terminus::Side(_))));
+    assert_on_value(&solution, &net);
+}
+
+#[test]
+fn a_floor_on_a_half_plane_has_confocal_lines() {
+    // Equipotentials are hyperbolas and flow lines ellipses with their foci at the ends of the floor.
+    let vertices =
+        [Vertex::Away { arriving: 180.0, leaving: 0.0 }, Vertex::at(1.0, 0.0), Vertex::at(-1.0, 0.0)];
+    let solution = solved_vertices(&vertices, &[Some(0), None, Some(1)], &[0.0, 1.0]);
+    let net = solution.flow_net(&FlowNetOptions { drops: 6, ..FlowNetOptions::default() });
+    assert_eq!(net.equipotentials.len(), 5);
+    for line in &net.equipotentials {
+        // φ = 1 − arccos(−x/…)…: |r₁ − r₂| is the same all along the line.
+        let difference = |z: &Point| (z + 1.0).norm() - (z - 1.0).norm();
+        let wanted = difference(&line.points[0]);
+        assert!(line.points.iter().all(|z| (difference(z) - wanted).abs() < 1e-8), "{line:?}");
+    }
+    assert!(net.flow_lines.len() > 1, "{}", net.flow_lines.len());
+    for line in &net.flow_lines {
+        let sum = |z: &Point| (z + 1.0).norm() + (z - 1.0).norm();
+        let wanted = sum(&line.points[0]);
+        assert!(line.points.iter().all(|z| (sum(z) - wanted).abs() < 1e-7 * wanted), "{line:?}");
+    }
+}

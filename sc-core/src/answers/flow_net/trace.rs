@@ -4,7 +4,7 @@
 //! `dλ = ± i conj(G)/|G| ds` with `G = turn · dW/dλ`; each Runge–Kutta step is brought back to the value by Newton's
 //! method on `W`, which is known in closed form up to quadrature, and then carried to the section by the forward map.
 
-use super::boundary::{Constant, DEEP, beyond, jumps};
+use super::boundary::{Constant, beyond, depth, jumps};
 use crate::answers::Solution;
 use crate::map::HalfPlanePoint;
 use crate::outline::Point;
@@ -107,7 +107,7 @@ impl Tracer<'_> {
                         arrival = Arrival::Vertex(vertex);
                         break;
                     }
-                    if !here.image.is_finite() || (here.image - self.reach.0).norm() > self.reach.1 {
+                    if !self.reaches(here.image) {
                         arrival = Arrival::Remote;
                         break;
                     }
@@ -126,6 +126,11 @@ impl Tracer<'_> {
             points.push(here.image);
         }
         Traced { points, arrival }
+    }
+
+    /// Whether a point is near enough to be drawn.
+    pub(super) fn reaches(&self, z: Point) -> bool {
+        z.is_finite() && (z - self.reach.0).norm() <= self.reach.1
     }
 
     /// `turn · dW/dλ`
@@ -252,11 +257,13 @@ impl Tracer<'_> {
                 .is_some_and(|w| (here.image - w).norm() < AT_VERTEX * map.outline().size())
         };
         let (anchor, ln) = (here.at.anchor, here.at.ln_offset.re);
-        let deep = |j: usize| if jumps(self.solution, j) { DEEP } else { 90.0 };
-        if heading < 0.0 && ln < -1.0 && (near(anchor) || ln < -deep(anchor)) {
+        let depth = |j: usize, else_at: f64| {
+            if jumps(self.solution, j) { depth(self.solution, j, anchor) } else { else_at }
+        };
+        if heading < 0.0 && ln < -1.0 && (near(anchor) || ln < depth(anchor, -90.0)) {
             return Some(anchor);
         }
-        let far = ln > beyond(self.solution, anchor) + deep(n - 1);
+        let far = ln > depth(n - 1, beyond(self.solution, anchor) + 90.0);
         (heading > 0.0 && ln > 1.0 && (near(n - 1) || far)).then_some(n - 1)
     }
 }
