@@ -114,11 +114,16 @@ pub(super) fn page_for(subject: &Subject<'_>, sheet: &Sheet) -> Page {
     Page::new(width, window, margins)
 }
 
-/// The window of all finite vertices and the beginnings of the sides that run off.
+/// The window of all finite vertices and the beginnings of the sides that run off; where the section opens from such
+/// a side, also as far into it.
 fn whole(outline: &Outline) -> Option<Window> {
+    let run_off = RUN_OFF * outline.size();
     Window::around((0..outline.n()).flat_map(|k| {
-        let (a, b) = ends(outline, k, RUN_OFF * outline.size());
-        [a, b]
+        let (a, b) = ends(outline, k, run_off);
+        let endless = outline.side_length(k).is_none();
+        let inward = outline.side_direction(k) * Point::new(0.0, run_off);
+        let opens = move |z: Point| endless && outline.contains(z) == Containment::Inside;
+        [a, b].into_iter().chain([a + inward, b + inward].into_iter().filter(move |&z| opens(z)))
     }))
 }
 

@@ -105,7 +105,7 @@ fn statements(subject: &Subject<'_>, net: &FlowNet, shape_factor: Option<Bounded
         ));
     } else {
         out.push(format!(
-            "Flow net: {} equal drops of {drop}; sides of different level touch, so the channels have no number",
+            "Flow net: {} equal drops of {drop}; sides of different level meet, so flux and channels have no end",
             net.n_drops
         ));
     }

@@ -202,3 +202,23 @@ fn figures_are_well_formed() {
     }
     assert_eq!(cases.len(), 8);
 }
+
+#[test]
+fn a_section_that_opens_to_infinity_is_shown_some_way_into_it() {
+    let vertices =
+        [Vertex::Away { arriving: 180.0, leaving: 0.0 }, Vertex::at(4.0, 0.0), Vertex::at(0.0, 0.0)];
+    let outline = Outline::new(&vertices).unwrap().value;
+    let (section, _) = Section::new(outline, &[Some(0), None, Some(1)], &[1.0, 3.0]).unwrap();
+    let names = ["right".to_owned(), "left".to_owned()];
+    let subject = Subject {
+        section: &section,
+        title: None,
+        length_unit: "m",
+        words: Words::of(Trade::Seepage),
+        electrodes: &names,
+        probes: Vec::new(),
+    };
+    let drawing = section_figure(&subject, &Sheet::default());
+    assert!(drawing.height > 300, "{}", drawing.height);
+    assert!(!drawing.to_svg().unwrap().contains("NaN"));
+}
