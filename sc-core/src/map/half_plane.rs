@@ -75,11 +75,12 @@ pub(crate) struct Solved {
 /// Residual above which a map is not accepted.
 const ACCEPT_RMS: f64 = 1e-9;
 /// Sweeps of the cross-ratio iteration, and the change of a log cross-ratio at which they may end earlier.
-const MAX_SWEEPS: usize = 4;
+const MAX_SWEEPS: usize = 8;
 const SWEEP_ENOUGH: f64 = 0.3;
-/// (root mean square to reach on the split system, its iterations, iterations on the true outline): on the
-/// robustness set the first stage has always been enough.
-const STAGES: [(f64, u64, u64); 2] = [(3e-2, 30, 12), (1e-6, 60, 40)];
+/// (root mean square to reach on the split system, its iterations, iterations on the true outline). The first stage goes
+/// straight to the true outline, which was enough for all 300 polygons of the robustness set; the others are there in
+/// case it is not.
+const STAGES: [(f64, u64, u64); 3] = [(1.0, 0, 25), (3e-2, 30, 12), (1e-6, 60, 40)];
 
 pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved, MapError> {
     let n = outline.n();
@@ -145,24 +146,24 @@ pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved,
     let mut best: Option<Fit> = None;
     // Stage by stage the split system is solved further before the added vertices are dropped.
     for (coarse_target, coarse_limit, fine_limit) in STAGES {
-        let mut ln_scale = None;
-        if pieces > n || !ends.is_empty() {
+        let split_equations = || Equations {
+            rules: &coarse,
+            ln_lengths: &split_lengths,
+            ends: &[],
+            rotation: Complex64::new(1.0, 0.0),
+        };
+        // With few finite sides the scale has to come from the cut outline.
+        let mut ln_scale = (!outline.is_bounded()).then(|| split_equations().matching_scale(&line));
+        if coarse_limit > 0 && (pieces > n || !ends.is_empty()) {
             let options = FitOptions {
                 target_rms: coarse_target,
                 max_iterations: coarse_limit,
                 observer: plan.observer.clone(),
             };
-            let equations = Equations {
-                rules: &coarse,
-                ln_lengths: &split_lengths,
-                ends: &[],
-                rotation: Complex64::new(1.0, 0.0),
-            };
-            let rough = fit(equations, &line, None, &options);
+            let rough = fit(split_equations(), &line, None, &options);
             iterations += rough.iterations;
             line = rough.line;
-            // With few finite sides the scale has to come from the cut outline.
-            ln_scale = (!outline.is_bounded()).then_some(rough.ln_scale);
+            ln_scale = ln_scale.map(|_| rough.ln_scale);
         }
         let done = finish(&line.gathered(&places), ln_scale, fine_limit);
         iterations += done.iterations;

@@ -197,16 +197,22 @@ fn channel_guess(outline: &SplitOutline, corners: [usize; 4]) -> Option<f64> {
     let (first, second) = candidates.iter().enumerate().find_map(|(i, &p)| {
         candidates[i + 1..]
             .iter()
-            .find(|&&q| q != p && corners.iter().all(|&k| sides_of(k).contains(&p) || sides_of(k).contains(&q)))
+            .find(|&&q| {
+                q != p && corners.iter().all(|&k| sides_of(k).contains(&p) || sides_of(k).contains(&q))
+            })
             .map(|&q| (p, q))
     })?;
     let span = |side: usize| {
         let k = outline.side.iter().position(|&s| s == side)?;
         let last = outline.side.iter().rposition(|&s| s == side)?;
         // A side that wraps round the end of the list starts after its last other piece.
-        let start = if k == 0 && last == n - 1 { outline.side.iter().rposition(|&s| s != side)? + 1 } else { k };
+        let start =
+            if k == 0 && last == n - 1 { outline.side.iter().rposition(|&s| s != side)? + 1 } else { k };
         let a = outline.corners[start % n];
-        Some((a, (outline.corners[(start + 1) % n] - a).unscale((outline.corners[(start + 1) % n] - a).norm())))
+        Some((
+            a,
+            (outline.corners[(start + 1) % n] - a).unscale((outline.corners[(start + 1) % n] - a).norm()),
+        ))
     };
     let ((p, u), (q, v)) = (span(first)?, span(second)?);
     // The second side runs back: u and −v point the same way along the channel.

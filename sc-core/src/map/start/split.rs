@@ -82,7 +82,13 @@ fn cut_sharp_corners(outline: &[Point], alpha: &[f64]) -> Vec<Corner> {
         let (start, end) = (cut_at(k), cut_at((k + 1) % n));
         out.push(Corner { at: a, alpha: alpha[k], original: Some(k), side: k, settled: start > 0.0 });
         if start > 0.0 {
-            out.push(Corner { at: a + direction * start, alpha: 1.0, original: None, side: k, settled: false });
+            out.push(Corner {
+                at: a + direction * start,
+                alpha: 1.0,
+                original: None,
+                side: k,
+                settled: false,
+            });
         }
         if end > 0.0 {
             out.push(Corner { at: b - direction * end, alpha: 1.0, original: None, side: k, settled: true });
