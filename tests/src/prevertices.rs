@@ -131,9 +131,9 @@ impl<'a> Prevertices<'a> {
         };
         let last = self.n() - 1;
         let angle = match (a == last, b == last) {
-            // From infinity up to x_b, and from x_a to infinity.
-            (true, _) => std::f64::consts::PI - from_left(b).arg(),
-            (_, true) => from_left(a).arg(),
+            // From −∞ up to x_b, and from x_a to +∞.
+            (true, _) => from_left(b).arg(),
+            (_, true) => from_left(a).im.atan2(-from_left(a).re),
             _ => {
                 let (low, high) = (a.min(b), a.max(b));
                 let width = (self.map.line().ln_distance(low, high) - ln_unit).exp();

@@ -84,6 +84,51 @@ pub enum NotAnswered {
     NoWay,
 }
 
+/// A case with what the program answers.
+#[derive(Debug, Clone)]
+pub struct Row {
+    /// The case.
+    pub case: Case,
+    /// Error left after the rounding of the decimal inputs is taken off.
+    pub error: f64,
+    /// The program's own bound, if it gives one.
+    pub estimate: Option<f64>,
+}
+
+impl Row {
+    /// Puts a case to the program.
+    ///
+    /// # Errors
+    /// As [`answer`].
+    pub fn of(case: Case) -> Result<Row, NotAnswered> {
+        let found = answer(&case)?;
+        let rounding = case.input_sensitivity.unwrap_or(0.0);
+        let difference = found.difference(&case.value);
+        // A NaN must stay one.
+        let error = if difference <= rounding { 0.0 } else { difference - rounding };
+        Ok(Row { case, error, estimate: found.error })
+    }
+
+    /// The error in parts of the value, of the largest entry if it is a matrix.
+    #[must_use]
+    pub fn relative(&self) -> f64 {
+        self.error / self.case.value.scale()
+    }
+
+    /// Whether the relative error is at most this; a NaN is not.
+    #[must_use]
+    pub fn is_within(&self, rtol: f64) -> bool {
+        self.relative() <= rtol
+    }
+
+    /// Whether the estimate, if there is one, covers the error and the rounding of the reference value to binary64.
+    #[must_use]
+    pub fn is_covered(&self) -> bool {
+        let rounded = 0.5 * f64::EPSILON * self.case.value.scale();
+        self.estimate.is_none_or(|estimate| self.error <= estimate + rounded)
+    }
+}
+
 /// Whether a case waits for something that the program does not do yet. This is the only filter.
 #[must_use]
 pub fn waiting(case: &Case) -> Option<Waiting> {
