@@ -4,6 +4,7 @@ use num_complex::Complex64;
 use rand_pcg::Pcg64;
 use rand_pcg::rand_core::{Rng, SeedableRng};
 
+use crate::held_section::{HeldSection, finite};
 use crate::rational::{RationalProblem, SideData};
 
 /// A generated section.
@@ -23,6 +24,33 @@ impl IrregularCase {
     pub fn problem(&self) -> RationalProblem {
         let side = |held: &Option<f64>| held.map_or(SideData::Insulated, SideData::Held);
         RationalProblem { vertices: self.vertices.clone(), sides: self.held.iter().map(side).collect() }
+    }
+
+    /// The case as a section for the program; each electrode is a run of sides.
+    #[must_use]
+    pub fn section(&self) -> HeldSection {
+        HeldSection::by_run(finite(&self.vertices), &self.held)
+    }
+
+    /// Points inside, spread evenly over the section, at least `least_clearance` from the outline.
+    ///
+    /// # Panics
+    /// If there is hardly any room at that clearance.
+    #[must_use]
+    pub fn interior_points(&self, count: usize, least_clearance: f64) -> Vec<Complex64> {
+        let mut random = Uniform(Pcg64::seed_from_u64(271_828));
+        let trials = (0..10_000 * count).map(|_| Complex64::new(10.0 * random.next(), 10.0 * random.next()));
+        let fits =
+            |z: &Complex64| contains(&self.vertices, *z) && clearance(&self.vertices, *z) >= least_clearance;
+        let points: Vec<Complex64> = trials.filter(fits).take(count).collect();
+        assert_eq!(points.len(), count, "{}: points found and points wanted", self.name);
+        points
+    }
+
+    /// Distance of a point from the outline.
+    #[must_use]
+    pub fn clearance(&self, z: Complex64) -> f64 {
+        clearance(&self.vertices, z)
     }
 
     /// Three points inside, well away from the outline.
@@ -125,6 +153,32 @@ fn simple_polygon(random: &mut Uniform, n: usize) -> Option<Vec<Complex64>> {
     sound.then_some(z)
 }
 
+/// A polygon of `n` sides with random electrodes, if this trial yields a sound one.
+fn trial(random: &mut Uniform, number: usize, n: usize, electrodes: usize) -> Option<IrregularCase> {
+    let vertices = simple_polygon(random, n)?;
+    let mut held: Vec<Option<f64>> = vec![None; n];
+    let mut placed = 0;
+    for _ in 0..1000 {
+        let first = random.index(n);
+        let free = |k: usize| held[k % n].is_none();
+        if placed < electrodes && free(first + n - 1) && free(first) && free(first + 1) {
+            held[first] = Some(placed as f64);
+            placed += 1;
+        }
+    }
+    // Some electrodes take the next side as well, where an insulated one still remains after it.
+    for k in 0..n {
+        if held[k].is_some() && held[(k + n - 1) % n].is_none() && random.index(3) == 0 {
+            let next = (k + 1) % n;
+            if held[next].is_none() && held[(k + 2) % n].is_none() && n > 2 * electrodes + 1 {
+                held[next] = held[k];
+            }
+        }
+    }
+    let name = format!("irregular_{number}_{n}_sides_{electrodes}_electrodes");
+    (placed == electrodes).then_some(IrregularCase { name, vertices, held })
+}
+
 /// Ten irregular sections of 5 to 9 sides: seven with two electrodes, three with three.
 ///
 /// Electrodes are single sides or two neighbouring ones, never touching another electrode.
@@ -140,32 +194,24 @@ pub fn irregular_ten() -> Vec<IrregularCase> {
         }
         let electrodes = if number % 3 == 2 { 3 } else { 2 };
         let n = (5 + number % 5).max(2 * electrodes + 1);
-        let Some(vertices) = simple_polygon(&mut random, n) else { continue };
-        let mut held: Vec<Option<f64>> = vec![None; n];
-        let mut placed = 0;
-        for _ in 0..1000 {
-            let first = random.index(n);
-            let free = |k: usize| held[k % n].is_none();
-            if placed < electrodes && free(first + n - 1) && free(first) && free(first + 1) {
-                held[first] = Some(placed as f64);
-                placed += 1;
-            }
-        }
-        // Some electrodes take the next side as well, where an insulated one still remains after it.
-        for k in 0..n {
-            if held[k].is_some() && held[(k + n - 1) % n].is_none() && random.index(3) == 0 {
-                let next = (k + 1) % n;
-                if held[next].is_none() && held[(k + 2) % n].is_none() && n > 2 * electrodes + 1 {
-                    held[next] = held[k];
-                }
-            }
-        }
-        if placed == electrodes {
-            let name = format!("irregular_{number}_{n}_sides_{electrodes}_electrodes");
-            cases.push(IrregularCase { name, vertices, held });
-        }
+        cases.extend(trial(&mut random, number, n, electrodes));
     }
     cases
+}
+
+/// The irregular section of this number, of 4 to 12 sides and two or three electrodes, the same on every machine.
+///
+/// # Panics
+/// If no sound polygon is found in many times the number of trials that are needed.
+#[must_use]
+pub fn irregular(number: u32) -> IrregularCase {
+    let mut random = Uniform(Pcg64::seed_from_u64(u64::from(number) + 1_000_000));
+    let electrodes = 2 + random.index(2);
+    let n = (4 + random.index(9)).max(2 * electrodes);
+    // One polygon in a few is sound at 4 sides, one in a thousand at 12.
+    (0..1_000_000)
+        .find_map(|_| trial(&mut random, number as usize, n, electrodes))
+        .unwrap_or_else(|| panic!("no sound polygon of {n} sides for number {number}"))
 }
 
 #[cfg(test)]
