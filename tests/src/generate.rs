@@ -38,7 +38,7 @@ impl IrregularCase {
     /// If there is hardly any room at that clearance.
     #[must_use]
     pub fn interior_points(&self, count: usize, least_clearance: f64) -> Vec<Complex64> {
-        let mut random = Uniform(Pcg64::seed_from_u64(271_828));
+        let mut random = Uniform::new(271_828);
         let trials = (0..10_000 * count).map(|_| Complex64::new(10.0 * random.next(), 10.0 * random.next()));
         let fits =
             |z: &Complex64| contains(&self.vertices, *z) && clearance(&self.vertices, *z) >= least_clearance;
@@ -77,15 +77,24 @@ impl IrregularCase {
 }
 
 /// Source of the coordinates: 53 random bits to a number in `[0, 1)`.
-struct Uniform(Pcg64);
+pub(crate) struct Uniform(Pcg64);
 
 impl Uniform {
+    pub(crate) fn new(state: u64) -> Uniform {
+        Uniform(Pcg64::seed_from_u64(state))
+    }
+
+    /// A number between two others.
+    pub(crate) fn between(&mut self, low: f64, high: f64) -> f64 {
+        low + (high - low) * self.next()
+    }
+
     fn next(&mut self) -> f64 {
         (self.0.next_u64() >> 11) as f64 / (1_u64 << 53) as f64
     }
 
     /// One of `0 … count − 1`.
-    fn index(&mut self, count: usize) -> usize {
+    pub(crate) fn index(&mut self, count: usize) -> usize {
         ((self.next() * count as f64) as usize).min(count.saturating_sub(1))
     }
 }
@@ -184,7 +193,7 @@ fn trial(random: &mut Uniform, number: usize, n: usize, electrodes: usize) -> Op
 /// Electrodes are single sides or two neighbouring ones, never touching another electrode.
 #[must_use]
 pub fn irregular_ten() -> Vec<IrregularCase> {
-    let mut random = Uniform(Pcg64::seed_from_u64(1869));
+    let mut random = Uniform::new(1869);
     let mut cases: Vec<IrregularCase> = Vec::new();
     // About one polygon in ten is sound; ten thousand trials are more than will ever be drawn.
     for _ in 0..10_000 {
@@ -205,7 +214,7 @@ pub fn irregular_ten() -> Vec<IrregularCase> {
 /// If no sound polygon is found in many times the number of trials that are needed.
 #[must_use]
 pub fn irregular(number: u32) -> IrregularCase {
-    let mut random = Uniform(Pcg64::seed_from_u64(u64::from(number) + 1_000_000));
+    let mut random = Uniform::new(u64::from(number) + 1_000_000);
     let electrodes = 2 + random.index(2);
     let n = (4 + random.index(9)).max(2 * electrodes);
     // One polygon in a few is sound at 4 sides, one in a thousand at 12.
