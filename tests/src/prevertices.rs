@@ -97,6 +97,33 @@ impl<'a> Prevertices<'a> {
         (own + ln_b * (1.0 + exponents[i]) + product).exp()
     }
 
+    /// A quarter of the length of the image of some sides under the map to the half-plane that is `z + O(1)` at the
+    /// one vertex at infinity of the outline, which has the angle −π; `None` without such a vertex.
+    ///
+    /// With that prevertex at infinity `f′ → C`, and the image is `|C|` times the distance on the line. Otherwise
+    /// `f ≈ −R/(x − x_I)` near its prevertex, `R = |C| ∏ |x_I − x_k|^(α_k − 1)`, and distances are
+    /// `R |x_a − x_b| / (|x_a − x_I||x_b − x_I|)`.
+    #[must_use]
+    pub fn logarithmic_capacity(&self, sides: &[usize]) -> Option<f64> {
+        let outline = self.map.outline();
+        let n = self.n();
+        let away = (0..n).find(|&k| outline.point(k).is_none())?;
+        let (first, last) = (*sides.first()?, *sides.last()?);
+        let (a, b) = (self.line_index(first), self.line_index((last + 1) % n));
+        let i = self.map.line_index_of(away);
+        let ln_image = if i + 1 == n {
+            self.map.ln_scale() + self.ln_between(a, b)
+        } else {
+            let exponents = self.map.exponents();
+            let others = (0..exponents.len()).filter(|&k| k != i);
+            let product: f64 = others.map(|k| exponents[k] * self.ln_between(k, i)).sum();
+            self.map.ln_scale() + product + self.ln_between(a, b)
+                - self.ln_between(a, i)
+                - self.ln_between(b, i)
+        };
+        Some(0.25 * ln_image.exp())
+    }
+
     /// `|f′(0)|` of the map of the unit disc that takes 0 to `z`: `2 Im ζ |f′(ζ)|` with `f(ζ) = z`.
     ///
     /// # Errors

@@ -47,10 +47,10 @@ impl Found {
 /// Why a case waits.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Waiting {
-    /// A vertex lies at infinity.
-    Infinity,
     /// The potential is given along a side.
     GivenData,
+    /// The question is one that the program does not answer yet.
+    Question,
 }
 
 /// Why a case that should be answered is not.
@@ -132,10 +132,12 @@ impl Row {
 /// Whether a case waits for something that the program does not do yet. This is the only filter.
 #[must_use]
 pub fn waiting(case: &Case) -> Option<Waiting> {
-    if !case.bounded {
-        Some(Waiting::Infinity)
-    } else if case.sides.iter().any(|side| matches!(side, Condition::Function(_))) {
+    if case.sides.iter().any(|side| matches!(side, Condition::Function(_))) {
         Some(Waiting::GivenData)
+    } else if matches!(case.ask, Ask::Excess { .. } | Ask::PotentialIntegral { .. })
+        || case.vertices.is_empty()
+    {
+        Some(Waiting::Question)
     } else {
         None
     }
@@ -224,6 +226,9 @@ fn of_map(case: &Case, map: &HalfPlaneMap) -> Result<Found, NotAnswered> {
         Ask::TransferResistance { contacts } => prevertices.transfer_resistance(contacts),
         Ask::PrevertexRatio { numerator, denominator, zero, infinity } => {
             prevertices.ratio(numerator, denominator, zero, infinity)
+        }
+        Ask::LogarithmicCapacity { ref image_sides, .. } => {
+            prevertices.logarithmic_capacity(image_sides).ok_or(NotAnswered::NoWay)?
         }
         _ => return Err(NotAnswered::NoWay),
     }))

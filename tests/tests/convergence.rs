@@ -54,12 +54,20 @@ fn sections() -> Vec<(String, HeldSection, f64)> {
 
 #[test]
 fn error_and_estimate_are_at_most_the_tolerance_asked_for() {
-    let (mut seen, mut loose) = (0, 0);
+    let (mut seen, mut loose, mut refused) = (0, 0, 0);
     for (name, section, expected) in sections() {
         for exponent in 3..=12 {
             let tolerance = 10.0_f64.powi(-exponent);
             let options = SolveOptions { tolerance, ..SolveOptions::default() };
-            let solved = section.solve_with(&options).unwrap_or_else(|why| panic!("{name}: {why}"));
+            seen += 1;
+            let solved = match section.solve_with(&options) {
+                Ok(solved) => solved,
+                Err(why) => {
+                    println!("{name} at {tolerance:.0e}: {why}");
+                    refused += 1;
+                    continue;
+                }
+            };
             let found = solved.shape_factor().unwrap_or_else(|| panic!("{name}: no shape factor"));
             let error = (found.value / expected - 1.0).abs();
             assert!(error <= tolerance, "{name}: error {error:.1e} where {tolerance:.0e} was asked for");
@@ -73,10 +81,10 @@ fn error_and_estimate_are_at_most_the_tolerance_asked_for() {
                 println!("{name}: estimate {:.1e} where {tolerance:.0e} was asked for", found.relative());
                 loose += 1;
             }
-            seen += 1;
         }
     }
     assert_eq!(seen, 240);
+    assert_eq!(refused, 0, "of {seen} solutions, {refused} were refused");
     assert_eq!(loose, 0, "of {seen} estimates, {loose} are above the tolerance asked for");
 }
 

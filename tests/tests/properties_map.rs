@@ -24,8 +24,8 @@ fn maps() -> impl Iterator<Item = (IrregularCase, HalfPlaneMap)> {
 }
 
 fn map_of(vertices: &[Complex64]) -> HalfPlaneMap {
-    let outline = Outline::new(&finite(vertices)).unwrap().value;
-    HalfPlaneMap::solve(&outline, &MapOptions::default()).unwrap()
+    let outline = Outline::new(&finite(vertices)).expect("a sound outline").value;
+    HalfPlaneMap::solve(&outline, &MapOptions::default()).expect("a map")
 }
 
 #[test]

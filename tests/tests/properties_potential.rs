@@ -140,7 +140,8 @@ fn gradient_is_the_limit_of_differences_of_the_potential() {
 /// of its logarithm over the circle is the value at the vertex, the logarithm of the corner coefficient, exactly.
 fn mean_on_arc(solution: &Solution, vertex: usize, r: f64, exponent: f64) -> (f64, f64) {
     let outline = solution.section().outline();
-    let (corner, angle) = (outline.point(vertex).unwrap(), outline.alpha()[vertex] * std::f64::consts::PI);
+    let (corner, angle) =
+        (outline.point(vertex).expect("bounded"), outline.alpha()[vertex] * std::f64::consts::PI);
     let m = 12;
     let (total, bound) = (0..m)
         .map(|j| {

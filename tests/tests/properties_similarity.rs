@@ -30,7 +30,7 @@ fn assert_alike(one: &Solution, points: &[Complex64], other: &Solution, images: 
         assert!((x.value - y.value).abs() <= x.error + y.error, "{x:?} and {y:?}");
     }
     for (&z, &w) in points.iter().zip(images) {
-        let (p, q) = (one.probe(z).unwrap(), other.probe(w).unwrap());
+        let (p, q) = (one.probe(z).expect("inside"), other.probe(w).expect("inside"));
         let (x, y) = (p.potential, q.potential);
         assert!((x.value - y.value).abs() <= x.error + y.error, "potential at {z}: {x:?} and {y:?}");
         let (g, h) = (length(p.gradient), length(q.gradient) * scale);

@@ -37,10 +37,11 @@ fn every_case_that_does_not_wait_is_answered() {
 fn cases_that_wait_are_counted() {
     let cases = load_cases();
     let count = |reason: Option<Waiting>| cases.iter().filter(|case| waiting(case) == reason).count();
-    let (answered, infinity, data) =
-        (count(None), count(Some(Waiting::Infinity)), count(Some(Waiting::GivenData)));
-    println!("{answered} cases answered; {infinity} wait for vertices at infinity, {data} for given data");
-    assert_eq!([answered, infinity, data], [121, 205, 26]);
+    let (answered, data, question) =
+        (count(None), count(Some(Waiting::GivenData)), count(Some(Waiting::Question)));
+    println!("{answered} cases answered; {data} wait for given data, {question} for an answer of their kind");
+    // 31 excesses, 4 integrals, the capacity of a body without an axis.
+    assert_eq!([answered, data, question], [287, 29, 36]);
     assert_eq!(ROWS.len(), answered);
 }
 
@@ -59,7 +60,7 @@ fn every_answer_is_right_to_ten_digits_and_nearly_all_to_twelve() {
     }
     assert_eq!(wrong, 0, "of {seen} cases, {wrong} are off by more than {ALWAYS:.0e}");
     assert!(20 * above <= seen, "of {seen} cases, {above} are off by more than {TYPICAL:.0e}");
-    assert!(seen >= 121, "only {seen} cases were compared");
+    assert!(seen >= 287, "only {seen} cases were compared");
 }
 
 #[test]
@@ -78,5 +79,5 @@ fn no_error_estimate_is_below_the_true_error() {
     ratios.sort_by(f64::total_cmp);
     println!("{seen} estimates; estimate over error (or 1e-14): median {:.1}", ratios[seen / 2]);
     assert_eq!(short, 0, "of {seen} estimates, {short} are too small");
-    assert!(seen >= 100, "only {seen} estimates were compared");
+    assert!(seen >= 248, "only {seen} estimates were compared");
 }
