@@ -31,6 +31,15 @@ use std::sync::Arc;
 const GROWTH: f64 = 1.5;
 /// Distances that differ by `e^40` from a panel's scale are constants (or zero) on it, to all digits.
 const FAR: f64 = 40.0;
+/// Sums are kept in this many lanes.
+const LANES: usize = 4;
+/// Points at more than this many panel units are lumped.
+const LUMP_RATIO: f64 = 5.0;
+/// Terms of a lump that bring its tail below 1e-17, and below 1e-8 for rules of few nodes.
+const MAX_TERMS: usize = 24;
+const COARSE_TERMS: usize = 11;
+/// Lumping pays from so many points on.
+const LUMP_FROM: usize = 4;
 /// A stretch of one power is taken in closed form if it spans more than this many e-folds.
 const WORTH_IT: f64 = 5.0;
 /// Work (sides × points) from which the sides are shared out over threads.
@@ -149,6 +158,12 @@ impl Stretch {
     }
 }
 
+/// Workspace of the panels of one stretch.
+struct Work {
+    active: Active,
+    lump: Lump,
+}
+
 /// What one panel is: its end `e^ln_end` in the line's units and its start as a fraction of the end.
 struct Panel<'a> {
     ln_end: f64,
@@ -163,10 +178,13 @@ fn add_panel(
     panel: &Panel<'_>,
     behind: &[Seen],
     ahead: &[Seen],
-    work: &mut Active,
+    work: &mut Work,
     want_derivatives: bool,
 ) {
-    work.clear();
+    let Work { active, lump } = work;
+    active.clear();
+    lump.clear();
+    let lumping = behind.len() + ahead.len() > LUMP_FROM;
     let mut constant = 0.0;
     let mut power_of_t = panel.self_exponent;
     let mut power_of_unit = 1.0 + panel.self_exponent;
@@ -182,7 +200,13 @@ fn add_panel(
             power_of_unit += p.exponent;
         } else {
             power_of_unit += p.exponent;
-            work.push(p, d.exp(), 1.0, (p.ln_reference - panel.ln_end).exp(), i);
+            let offset = d.exp();
+            if lumping && offset > LUMP_RATIO {
+                constant += p.exponent * d;
+                lump.push(p.exponent, 1.0 / offset, (p.ln_reference - p.ln_distance).exp(), i);
+            } else {
+                active.push(p, offset, 1.0, (p.ln_reference - panel.ln_end).exp(), i);
+            }
         }
     }
     for (i, p) in ahead.iter().enumerate() {
@@ -191,32 +215,53 @@ fn add_panel(
             constant += p.exponent * p.ln_distance;
         } else {
             power_of_unit += p.exponent;
-            work.push(p, d.exp(), -1.0, (p.ln_reference - panel.ln_end).exp(), behind.len() + i);
+            let offset = d.exp();
+            if lumping && offset > LUMP_RATIO {
+                constant += p.exponent * d;
+                lump.push(p.exponent, -1.0 / offset, (p.ln_reference - p.ln_distance).exp(), behind.len() + i);
+            } else {
+                active.push(p, offset, -1.0, (p.ln_reference - panel.ln_end).exp(), behind.len() + i);
+            }
         }
     }
+    lump.gather();
     let width = 1.0 - panel.start;
     let mut total = 0.0;
+    let mut f_moments = [0.0; MAX_TERMS];
     for (x, w) in panel.rule.points() {
         let tau = panel.start + width * x;
         let mut ln_f = if power_of_t == 0.0 { 0.0 } else { power_of_t * ln_positive(tau) };
-        ln_f += work.ln_product(tau);
+        ln_f += active.ln_product(tau) + lump.ln_product(tau);
         let f = w * ln_f.exp();
         total += f;
         if want_derivatives {
-            work.add_nearness(tau, f);
+            active.add_nearness(tau, f);
+            if !lump.u.is_empty() {
+                let mut power = f;
+                for m in &mut f_moments[..lump.terms] {
+                    *m += power;
+                    power *= tau;
+                }
+            }
         }
     }
     let factor = out.rescale(constant + power_of_unit * panel.ln_end);
     let factor = if panel.start > 0.0 { factor * width } else { factor };
     out.total += factor * total;
     if want_derivatives {
-        for (k, &source) in work.source.iter().enumerate() {
-            let b = factor * work.references[k] * work.nearness[k];
+        let mut add = |source: usize, b: f64| {
             if source < behind.len() {
-                out.behind[source] += b
+                out.behind[source] += b;
             } else {
-                out.ahead[source - behind.len()] += b
+                out.ahead[source - behind.len()] += b;
             }
+        };
+        for (k, &source) in active.source.iter().enumerate() {
+            add(source, factor * active.references[k] * active.nearness[k]);
+        }
+        let lumped = lump.nearness(&f_moments[..lump.terms]);
+        for ((&source, reference), nearness) in lump.source.iter().zip(&lump.references).zip(lumped) {
+            add(source, factor * reference * nearness);
         }
         for (b, p) in out.behind.iter_mut().zip(behind) {
             if p.ln_distance - panel.ln_end > FAR {
@@ -262,14 +307,23 @@ impl Active {
         self.source.push(source);
     }
 
-    /// `Σ_j a_j ln(δ_j ± τ)`
+    /// `Σ_j a_j ln(δ_j ± τ)`, in four lanes so that the compiler may vectorise the sum.
     #[inline]
     fn ln_product(&self, tau: f64) -> f64 {
-        let mut sum = 0.0;
-        for ((a, d), s) in self.exponents.iter().zip(&self.offsets).zip(&self.signs) {
-            sum += a * ln_positive(d + s * tau);
+        let mut lanes = [0.0; LANES];
+        let (a, d, s) = (
+            self.exponents.chunks_exact(LANES),
+            self.offsets.chunks_exact(LANES),
+            self.signs.chunks_exact(LANES),
+        );
+        let rest = a.remainder().iter().zip(d.remainder()).zip(s.remainder());
+        let rest: f64 = rest.map(|((a, d), s)| a * ln_positive(d + s * tau)).sum();
+        for ((a, d), s) in a.zip(d).zip(s) {
+            for i in 0..LANES {
+                lanes[i] += a[i] * ln_positive(d[i] + s[i] * tau);
+            }
         }
-        sum
+        lanes.iter().sum::<f64>() + rest
     }
 
     /// `nearness_j += f/(δ_j ± τ)`
@@ -278,6 +332,88 @@ impl Active {
         for ((b, d), s) in self.nearness.iter_mut().zip(&self.offsets).zip(&self.signs) {
             *b += f / (d + s * tau);
         }
+    }
+}
+
+/// Points far from a panel, lumped: with `u_j = ±1/δ_j` small,
+///
+/// ```text
+/// Σ a_j ln(1 + u_j τ) = Σ_p (−1)^{p+1} M_p τ^p/p,   M_p = Σ a_j u_j^p
+/// ∫ f/(δ_j ± τ) = (1/δ_j) Σ_p (−u_j)^p F_p,         F_p = ∫ f τ^p
+/// ```
+/// A point then costs as many products as there are terms, whatever the number of nodes.
+struct Lump {
+    exponents: Vec<f64>,
+    u: Vec<f64>,
+    powers: Vec<f64>,
+    references: Vec<f64>,
+    source: Vec<usize>,
+    /// `(−1)^{p+1} M_p/p`, `p = 1 …`
+    moments: [f64; MAX_TERMS],
+    terms: usize,
+}
+
+impl Lump {
+    fn with_capacity(n: usize, terms: usize) -> Lump {
+        let v = || Vec::with_capacity(n);
+        Lump {
+            exponents: v(),
+            u: v(),
+            powers: v(),
+            references: v(),
+            source: Vec::with_capacity(n),
+            moments: [0.0; MAX_TERMS],
+            terms,
+        }
+    }
+
+    fn clear(&mut self) {
+        self.exponents.clear();
+        self.u.clear();
+        self.references.clear();
+        self.source.clear();
+    }
+
+    fn push(&mut self, exponent: f64, u: f64, reference: f64, source: usize) {
+        self.exponents.push(exponent);
+        self.u.push(u);
+        self.references.push(reference);
+        self.source.push(source);
+    }
+
+    fn gather(&mut self) {
+        self.powers.clear();
+        self.powers.extend_from_slice(&self.exponents);
+        for p in 1..=self.terms {
+            let mut lanes = [0.0; LANES];
+            let mut powers = self.powers.chunks_exact_mut(LANES);
+            let u = self.u.chunks_exact(LANES);
+            let mut sum = 0.0;
+            let tail = u.remainder();
+            for (w, u) in powers.by_ref().zip(u) {
+                for i in 0..LANES {
+                    w[i] *= u[i];
+                    lanes[i] += w[i];
+                }
+            }
+            for (w, u) in powers.into_remainder().iter_mut().zip(tail) {
+                *w *= u;
+                sum += *w;
+            }
+            let moment = sum + lanes.iter().sum::<f64>();
+            self.moments[p - 1] = if p % 2 == 1 { moment } else { -moment } / p as f64;
+        }
+    }
+
+    /// `Σ a_j ln(1 + u_j τ)`
+    #[inline]
+    fn ln_product(&self, tau: f64) -> f64 {
+        self.moments[..self.terms].iter().rev().fold(0.0, |sum, m| (sum + m) * tau)
+    }
+
+    /// `∫ f/(1 + u_j τ)` for each point, from the moments of `f`.
+    fn nearness(&self, f_moments: &[f64]) -> Vec<f64> {
+        self.u.iter().map(|u| f_moments.iter().rev().fold(0.0, |sum, f| f - u * sum)).collect()
     }
 }
 
@@ -295,7 +431,11 @@ fn outward(
     want_derivatives: bool,
 ) -> Stretch {
     let mut out = Stretch::new(behind.len(), ahead.len());
-    let mut work = Active::with_capacity(behind.len() + ahead.len());
+    let terms = if line_rules.legendre.len() < 8 { COARSE_TERMS } else { MAX_TERMS };
+    let mut work = Work {
+        active: Active::with_capacity(behind.len() + ahead.len()),
+        lump: Lump::with_capacity(behind.len() + ahead.len(), terms),
+    };
     let a = line_rules.exponents[anchor];
     let singular = a != 0.0;
     let closest = if singular {
