@@ -154,6 +154,41 @@ fn nearest(solution: &Solution, j: usize, anchor: usize) -> f64 {
     }
 }
 
+/// The same point held from the prevertex nearest to it and, of several that are nearest to rounding, from the one
+/// next to it on the axis: the straight way from there passes no other prevertex, and names the side.
+pub(super) fn settled(solution: &Solution, p: HalfPlanePoint) -> HalfPlanePoint {
+    let map = solution.map();
+    let near = map.nearest_anchor(p);
+    let (line, unit) = (map.line(), |k: usize| map.product().ln_unit(k));
+    let HalfPlanePoint { anchor, ln_offset } = near;
+    if !ln_offset.re.is_finite() {
+        return near;
+    }
+    let leftward = ln_offset.im > 0.5 * PI;
+    // ζ − x_j in units of ζ − x_anchor, for the points that ζ is beyond.
+    let relative = |j: usize| {
+        let ratio = (line.ln_distance(anchor.min(j), anchor.max(j)) - ln_offset.re - unit(anchor)).exp();
+        let z = Complex64::from_polar(ratio, -ln_offset.im);
+        if leftward { z } else { -z }
+    };
+    let beyond = |j: &usize| {
+        let ratio = relative(*j).norm();
+        ratio < ln_offset.im.cos().abs()
+    };
+    let next = if leftward {
+        (0..anchor).rev().take_while(beyond).last()
+    } else {
+        (anchor + 1..line.n_points()).take_while(beyond).last()
+    };
+    let Some(j) = next else { return near };
+    let z = relative(j);
+    let ln = 0.5 * (2.0 * z.re + z.norm_sqr()).ln_1p();
+    let on_axis = ln_offset.im <= 0.0 || ln_offset.im >= PI;
+    let turn = if on_axis { 0.0 } else { z.im.atan2(1.0 + z.re) };
+    let moved = ln_offset + Complex64::new(ln + unit(anchor) - unit(j), turn);
+    HalfPlanePoint { anchor: j, ln_offset: Complex64::new(moved.re, moved.im.clamp(0.0, PI)) }
+}
+
 fn add_side(solution: &Solution, constant: Constant, side: usize, out: &mut Vec<Piece>) {
     let map = solution.map();
     let n = map.outline().n();
@@ -318,6 +353,6 @@ impl Piece {
                 break;
             }
         }
-        Some(solution.map().nearest_anchor(self.at(ln)))
+        Some(settled(solution, self.at(ln)))
     }
 }

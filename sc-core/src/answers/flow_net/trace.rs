@@ -4,7 +4,7 @@
 //! `dλ = ± i conj(G)/|G| ds` with `G = turn · dW/dλ`; each Runge–Kutta step is brought back to the value by Newton's
 //! method on `W`, which is known in closed form up to quadrature, and then carried to the section by the forward map.
 
-use super::boundary::{Constant, beyond, depth, jumps};
+use super::boundary::{Constant, beyond, depth, jumps, settled};
 use crate::answers::Solution;
 use crate::map::HalfPlanePoint;
 use crate::outline::Point;
@@ -180,7 +180,7 @@ impl Tracer<'_> {
         let Some(at) = self.projected(HalfPlanePoint { anchor, ln_offset: trial }, MAX_CORRECTION * h) else {
             return Step::Shorter;
         };
-        let next = self.station(self.solution.map().nearest_anchor(at), sign);
+        let next = self.station(settled(self.solution, at), sign);
         if self.flat(here, &next) { Step::On(next) } else { Step::Shorter }
     }
 
@@ -232,7 +232,7 @@ impl Tracer<'_> {
             return Step::Shorter;
         }
         let n = self.solution.map().outline().n();
-        let at = self.solution.map().nearest_anchor(at);
+        let at = settled(self.solution, at);
         let side = if at.ln_offset.im < 0.5 * PI { at.anchor } else { (at.anchor + n - 1) % n };
         let end = self.station(at, sign);
         if self.flat(here, &end) { Step::Ashore(end, side) } else { Step::Shorter }
