@@ -14,8 +14,8 @@ const EVALUATION_NODES: usize = 14;
 /// Newton steps for a place on a side: the unknown is `ln t` against `ln s`, which the local power law makes nearly
 /// linear; 9 were the most seen, the rest is bisection.
 const MAX_PLACE_STEPS: usize = 80;
-/// Offsets beyond this (in the logarithm) would leave the range of `f64`.
-const MAX_LN_OFFSET: f64 = 640.0;
+/// Offsets beyond this (in the logarithm) have lost the digits of a width.
+const MAX_LN_OFFSET: f64 = 1e9;
 
 /// How a map is solved for. The default is good; the second choice of everything gives an independent solution.
 #[derive(Debug, Clone)]
@@ -291,7 +291,7 @@ impl HalfPlaneMap {
     /// infinity `s ≤ 0` is measured from its finite end.
     ///
     /// Returns `None` for the vertex that lies at `ζ = ∞`, for a vertex at infinity, and for places so far out that
-    /// numbers do not reach (beyond 200 widths in a channel).
+    /// numbers do not reach (beyond 1e8 widths in a channel).
     pub fn on_side(&self, side: usize, s: f64) -> Option<HalfPlanePoint> {
         if !s.is_finite() {
             return None;

@@ -242,11 +242,11 @@ impl HalfPlaneMap {
     fn start_near_infinity(&self, vertex: usize, inward: Point, reach: f64) -> Option<(HalfPlanePoint, f64)> {
         let alpha = self.outline().alpha()[vertex];
         let anchor = self.line().n_points() - 1;
-        let span = (self.line().ln_distance(0, anchor) - self.product().ln_unit(anchor)).exp();
+        let ln_span = self.line().ln_distance(0, anchor) - self.product().ln_unit(anchor);
         // In the line's unit: |f − w_n| = e^ln_scale |t|^{−α}/α.
         let unit = self.product().ln_unit(anchor);
         let ln_speed = self.ln_scale() - alpha.ln();
-        let rho = (ln_speed - alpha * ((20.0 * span).ln() + unit)).exp().min(reach);
+        let rho = (ln_speed - alpha * (3.0 + ln_span + unit)).exp().min(reach);
         if rho <= 0.0 {
             return None;
         }
@@ -254,7 +254,7 @@ impl HalfPlaneMap {
         // From the side that leaves the vertex (from −∞, arg t = π) turning left means arg t falling to 0.
         let relative = inward / self.outline().side_direction(vertex);
         let angle = PI - turn_left(relative, alpha) / alpha;
-        (ln_t < 640.0).then(|| (HalfPlanePoint { anchor, ln_offset: Complex64::new(ln_t, angle) }, rho))
+        ln_t.is_finite().then(|| (HalfPlanePoint { anchor, ln_offset: Complex64::new(ln_t, angle) }, rho))
     }
 
     /// Newton's method on `f(ζ) = z` in the logarithm of the offset; near a corner also in the logarithm of the image,

@@ -20,6 +20,12 @@ const SQUARABLE: f64 = 1e140;
 const GROWTH: f64 = 1.5;
 /// Below this `ln` offset the other points' factors are constant to all digits.
 const NEAR_LN_OFFSET: f64 = -40.0;
+/// Offsets up to this (in the logarithm) are handled as plain numbers, those beyond in logarithms.
+const PLAIN_LN_OFFSET: f64 = 250.0;
+/// Scales that differ by `e^40` do not see each other.
+const REMOTE: f64 = 40.0;
+/// A panel far out ends at 2.5 times its start.
+const PANEL_E_FOLDS: f64 = 0.916;
 /// Panels in one path. Each grows by 2.5, so 2000 span more than the range of `f64`.
 const MAX_PANELS: usize = 2000;
 
@@ -111,8 +117,20 @@ struct Columns {
 #[derive(Debug, Clone, Copy)]
 struct Neighbour {
     index: usize,
-    /// Position in anchor units.
+    /// Position in anchor units; infinite if out of range.
     position: f64,
+    ln_distance: f64,
+    exponent: f64,
+}
+
+impl Neighbour {
+    /// `(ζ − x_j)/t` for the offset `t e^{iθ}` with `ln t = ln_t` on the line; of unit size if the point is near to the
+    /// anchor, and `None` if it is so far that only its distance counts.
+    fn seen_from(&self, ln_t: f64, direction: Complex64) -> Option<Complex64> {
+        let ratio = self.ln_distance - ln_t;
+        let signed = ratio.exp() * if self.position > 0.0 { -1.0 } else { 1.0 };
+        (ratio < REMOTE).then(|| direction + signed)
+    }
 }
 
 /// The product seen from one of its points.
@@ -126,7 +144,7 @@ struct View {
     general: Columns,
     /// `ln unit · Σ a_j` over `general`.
     general_ln_unit: f64,
-    /// Every other point within reach, for the choice of the nearest anchor.
+    /// Every other point, for the choice of the nearest anchor and for offsets beyond the range of squares.
     neighbours: Vec<Neighbour>,
     /// `Σ a_j ln |x_j − x_anchor|` over points too far to vary.
     far_ln: f64,
@@ -160,9 +178,14 @@ impl PowerProduct {
                 };
                 for (j, &a) in exponents.iter().enumerate() {
                     let distance = (d[j] - ln_unit).exp();
-                    if j != k && distance < FINITE_DISTANCE {
+                    if j != k {
                         let position = if j < k { -distance } else { distance };
-                        view.neighbours.push(Neighbour { index: j, position });
+                        view.neighbours.push(Neighbour {
+                            index: j,
+                            position,
+                            ln_distance: d[j],
+                            exponent: a,
+                        });
                     }
                     if j == k || a == 0.0 {
                         continue;
@@ -204,6 +227,11 @@ impl PowerProduct {
         // Each move at least halves the distance or goes to a direct neighbour of the right one.
         for _ in 0..8 {
             let view = &self.views[here.anchor];
+            if here.ln_offset.re > PLAIN_LN_OFFSET {
+                let Some(moved) = self.nearer_far_out(here) else { break };
+                here = moved;
+                continue;
+            }
             let offset = here.offset();
             let own = offset.norm();
             if own < 0.5 {
@@ -232,6 +260,9 @@ impl PowerProduct {
     /// The value at a point that is not itself a singular point.
     pub(crate) fn value(&self, p: HalfPlanePoint) -> Scaled {
         let view = &self.views[p.anchor];
+        if p.ln_offset.re > PLAIN_LN_OFFSET {
+            return view.far_out(p.ln_offset);
+        }
         let others = view.others(p.offset());
         if view.self_exponent == 0.0 {
             return others;
@@ -247,6 +278,10 @@ impl PowerProduct {
 
     /// `∫ P dζ` from the anchor to the point, along the straight line. Needs the anchor's exponent above −1.
     pub(crate) fn integral(&self, p: HalfPlanePoint) -> Scaled {
+        if p.ln_offset.re > PLAIN_LN_OFFSET {
+            let turn = HalfPlanePoint { ln_offset: Complex64::new(0.0, p.ln_offset.im), ..p };
+            return Scaled::sum([self.integral(turn), self.outward(p)].into_iter());
+        }
         let mut sum = Sum::default();
         let (ln_factor, factor) = self.along_ray(p, |_, value, weight, ln| sum.add(value, weight, ln));
         sum.total().times(ln_factor, factor)
@@ -263,6 +298,10 @@ impl PowerProduct {
     /// `∫ P dζ` from an offset to a point of the same anchor. Close to an anchor with exponent −1 or below the
     /// product is its leading power, integrated in closed form.
     pub(crate) fn integral_from(&self, reference: Complex64, p: HalfPlanePoint) -> Scaled {
+        if p.ln_offset.re > PLAIN_LN_OFFSET {
+            let turn = Complex64::from_polar(1.0, p.ln_offset.im);
+            return Scaled::sum([self.segment(p.anchor, reference, turn), self.outward(p)].into_iter());
+        }
         if p.ln_offset.re >= NEAR_LN_OFFSET || self.views[p.anchor].self_exponent > -1.0 {
             return self.segment(p.anchor, reference, p.offset());
         }
@@ -281,6 +320,64 @@ impl PowerProduct {
             coefficient.times(alpha * p.ln_offset.re, power * ratio / alpha)
         };
         Scaled::sum([way, rest].into_iter())
+    }
+
+    /// `∫ P dζ` along the ray from the offset 1 to an offset beyond the range of squares. Stretches without a point near
+    /// their scale are one power and cost one term.
+    fn outward(&self, p: HalfPlanePoint) -> Scaled {
+        let view = &self.views[p.anchor];
+        let direction = Complex64::from_polar(1.0, p.ln_offset.im);
+        let target = p.ln_offset.re + view.ln_unit;
+        let mut sum = Sum::default();
+        let mut here = view.ln_unit;
+        for _ in 0..MAX_PANELS {
+            if here >= target {
+                break;
+            }
+            if let Some((reached, part)) = view.power_stretch(here, target, p.ln_offset.im) {
+                sum.add(part, 1.0, 0.0);
+                here = reached;
+                continue;
+            }
+            // A panel [t_0, t_1] in units of its end; points at its scale keep their distance or it is halved.
+            let mut width = PANEL_E_FOLDS.min(target - here);
+            for _ in 0..30 {
+                let clear = |ln_t: f64, share: f64| {
+                    let length = 1.0 - (-width).exp();
+                    view.neighbours.iter().filter(|n| n.exponent != 0.0).all(|n| {
+                        let scale = (ln_t - here - width).exp();
+                        n.seen_from(ln_t, direction).is_none_or(|z| share * z.norm() * scale >= length)
+                    })
+                };
+                if clear(here + width, 3.0) && clear(here + width + (0.5 + 0.5 * (-width).exp()).ln(), 1.25) {
+                    break;
+                }
+                width *= 0.5;
+            }
+            let end = here + width;
+            let start = (-width).exp();
+            for (t, w) in self.rules.legendre().points() {
+                let tau = start + (1.0 - start) * t;
+                let ln_offset = Complex64::new(end + tau.ln() - view.ln_unit, p.ln_offset.im);
+                sum.add(view.far_out(ln_offset), w * (1.0 - start), end);
+            }
+            here = end;
+        }
+        sum.total().times(0.0, direction)
+    }
+
+    /// One move to a nearer anchor from an offset beyond the range of squares.
+    fn nearer_far_out(&self, p: HalfPlanePoint) -> Option<HalfPlanePoint> {
+        let view = &self.views[p.anchor];
+        let ln_t = p.ln_offset.re + view.ln_unit;
+        let direction = Complex64::from_polar(1.0, p.ln_offset.im);
+        let seen = view.neighbours.iter().filter_map(|n| Some((n.index, n.seen_from(ln_t, direction)?)));
+        let (index, z) = seen.min_by(|a, b| a.1.norm_sqr().total_cmp(&b.1.norm_sqr()))?;
+        // Points of the anchor's own neighbourhood are equally near: no move.
+        (z.norm() < 1.0 - 1e-9).then(|| {
+            let ln_offset = Complex64::new(ln_t + z.norm().ln() - self.views[index].ln_unit, argument(z));
+            HalfPlanePoint { anchor: index, ln_offset }
+        })
     }
 
     /// Visits the quadrature nodes of [`PowerProduct::integral`] with (offset, value, weight, `ln` of a factor);
@@ -368,7 +465,8 @@ impl PowerProduct {
     /// Signed places of the points other than the anchor, as `(index, x_anchor − x_j)` in anchor units; points too far
     /// to be counted are left out.
     pub(crate) fn shifts(&self, anchor: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
-        self.views[anchor].neighbours.iter().map(|n| (n.index, -n.position))
+        let within = |n: &&Neighbour| n.position.abs() < FINITE_DISTANCE;
+        self.views[anchor].neighbours.iter().filter(within).map(|n| (n.index, -n.position))
     }
 }
 
@@ -468,6 +566,60 @@ impl View {
             mantissa *= Complex64::from_polar(1.0, phase);
         }
         Scaled { ln_scale, mantissa }
+    }
+
+    /// The whole product at an offset beyond the range of squares, in logarithms.
+    fn far_out(&self, ln_offset: Complex64) -> Scaled {
+        let ln_t = ln_offset.re + self.ln_unit;
+        let direction = Complex64::from_polar(1.0, ln_offset.im);
+        let mut ln_scale = self.self_exponent * ln_t;
+        let mut phase = self.self_exponent * ln_offset.im;
+        for n in self.neighbours.iter().filter(|n| n.exponent != 0.0) {
+            match n.seen_from(ln_t, direction) {
+                Some(z) => {
+                    ln_scale += n.exponent * (ln_t + 0.5 * z.norm_sqr().max(1e-300).ln());
+                    phase += n.exponent * argument(z);
+                }
+                None => {
+                    ln_scale += n.exponent * n.ln_distance;
+                    phase += if n.position > 0.0 { PI * n.exponent } else { 0.0 };
+                }
+            }
+        }
+        Scaled { ln_scale, mantissa: Complex64::from_polar(1.0, phase) }
+    }
+
+    /// `∫ P dt` (without the direction) from distance `e^ln_start` on, as far as it is one power; with the distance
+    /// reached.
+    fn power_stretch(&self, ln_start: f64, target: f64, angle: f64) -> Option<(f64, Scaled)> {
+        let mut limit = target;
+        let (mut power, mut ln_scale, mut phase) = (self.self_exponent, 0.0, self.self_exponent * angle);
+        for n in self.neighbours.iter().filter(|n| n.exponent != 0.0) {
+            if n.ln_distance < ln_start - REMOTE {
+                power += n.exponent;
+                phase += n.exponent * angle;
+            } else if n.ln_distance > ln_start + REMOTE {
+                limit = limit.min(n.ln_distance - REMOTE);
+                ln_scale += n.exponent * n.ln_distance;
+                phase += if n.position > 0.0 { PI * n.exponent } else { 0.0 };
+            } else {
+                return None;
+            }
+        }
+        let length = limit - ln_start;
+        if length < 1.0 {
+            return None;
+        }
+        let q = 1.0 + power;
+        let (scale, total) = if (q * length).abs() < 1e-8 {
+            (q * ln_start, length * (1.0 + 0.5 * q * length))
+        } else if q > 0.0 {
+            (q * limit, -f64::exp_m1(-q * length) / q)
+        } else {
+            (q * ln_start, f64::exp_m1(q * length) / q)
+        };
+        let part = Scaled { ln_scale: ln_scale + scale, mantissa: Complex64::from_polar(total, phase) };
+        Some((limit, part))
     }
 
     /// Distance of an offset from the nearest singular point, the anchor included if it is one.

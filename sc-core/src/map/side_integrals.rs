@@ -218,7 +218,12 @@ fn add_panel(
             let offset = d.exp();
             if lumping && offset > LUMP_RATIO {
                 constant += p.exponent * d;
-                lump.push(p.exponent, -1.0 / offset, (p.ln_reference - p.ln_distance).exp(), behind.len() + i);
+                lump.push(
+                    p.exponent,
+                    -1.0 / offset,
+                    (p.ln_reference - p.ln_distance).exp(),
+                    behind.len() + i,
+                );
             } else {
                 active.push(p, offset, -1.0, (p.ln_reference - panel.ln_end).exp(), behind.len() + i);
             }
