@@ -32,7 +32,11 @@ fn draw_writes_a_picture_and_keeps_one_that_is_there() {
         }
         let again = run_on(&section, &["draw", "-", "--out", path]);
         assert_eq!(again.status, 2);
-        assert!(again.messages.contains("exists") && again.messages.contains("--replace"), "{}", again.messages);
+        assert!(
+            again.messages.contains("exists") && again.messages.contains("--replace"),
+            "{}",
+            again.messages
+        );
         fs::remove_file(&out).unwrap();
     }
 }

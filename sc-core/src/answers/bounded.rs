@@ -14,7 +14,7 @@ pub struct Bounded {
 impl Bounded {
     /// A value with a bound; an infinite value is exact.
     pub fn new(value: f64, error: f64) -> Bounded {
-        Bounded { value, error: if value.is_finite() { error } else { 0.0 } }
+        Bounded { value, error: if value.is_infinite() { 0.0 } else { error } }
     }
 
     /// The value and its bound times a factor.

@@ -515,7 +515,9 @@ impl Solution {
         let vertex = p.on_side.and_then(|(k, s)| self.vertex_at(k, s));
         let (gradient, slope) = self.gradient_at(p, other, vertex);
         let floor = self.evidence.relative(0.0) * range;
+        // At a needle's tip the slope may be beyond all numbers; then nothing better than the range is promised.
         let moved = slope * (p.miss + 2.0 * f64::EPSILON * z.norm());
+        let moved = if moved.is_finite() { moved } else { range };
         let level = side.and_then(|k| self.section.level_of_side(k));
         let potential = match level {
             // On a held side the level is the datum itself.

@@ -96,6 +96,8 @@ pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved,
             Some((b - a).norm().ln() + plan.disturbance * disturbance(k) * rounding(a, b))
         })
         .collect();
+    // A looser residual that was asked for is accepted too.
+    let accepted = ACCEPT_RMS.max(plan.target_rms);
     let ends = ends(outline, plan.at_infinity);
     let rotation = rotation(outline, plan.at_infinity);
     let fine = RuleSet::new(&exponents, plan.nodes)?;
@@ -110,7 +112,7 @@ pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved,
     };
     if let Some(line) = plan.warm_start.as_ref().filter(|line| line.n_points() == n - 1) {
         let done = finish(line, None, 12);
-        if done.rms <= ACCEPT_RMS {
+        if done.rms <= accepted {
             let iterations = done.iterations;
             return Ok(Solved::new(done, n, iterations));
         }
@@ -167,7 +169,7 @@ pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved,
         }
         let done = finish(&line.gathered(&places), ln_scale, fine_limit);
         iterations += done.iterations;
-        let good = done.rms <= ACCEPT_RMS;
+        let good = done.rms <= accepted;
         if best.as_ref().is_none_or(|b| done.rms < b.rms) {
             best = Some(done);
         }
@@ -176,7 +178,7 @@ pub(crate) fn solve_parameters(outline: &Outline, plan: &Plan) -> Result<Solved,
         }
     }
     match best {
-        Some(done) if done.rms <= ACCEPT_RMS => Ok(Solved::new(done, pieces, iterations)),
+        Some(done) if done.rms <= accepted => Ok(Solved::new(done, pieces, iterations)),
         other => Err(MapError::NotConverged {
             stop: other.as_ref().map_or(StopReason::NoDescent, |b| b.stop),
             iterations,

@@ -216,6 +216,27 @@ impl PowerProduct {
         self.views[anchor].ln_unit
     }
 
+    /// `ln(ζ − x_j)`, the imaginary part in `[0, π]`.
+    pub(crate) fn ln_from(&self, j: usize, p: HalfPlanePoint) -> Complex64 {
+        let view = &self.views[p.anchor];
+        let ln_t = p.ln_offset.re + view.ln_unit;
+        let direction = Complex64::from_polar(1.0, p.ln_offset.im);
+        match view.neighbours.iter().find(|n| n.index == j) {
+            None => Complex64::new(ln_t, p.ln_offset.im),
+            // In the larger of the two scales nothing overflows.
+            Some(n) if n.ln_distance > ln_t => {
+                let sign = if n.position > 0.0 { -1.0 } else { 1.0 };
+                let z = direction * (ln_t - n.ln_distance).exp() + sign;
+                Complex64::new(n.ln_distance + z.norm().ln(), argument(z))
+            }
+            Some(n) => {
+                let sign = if n.position > 0.0 { -1.0 } else { 1.0 };
+                let z = direction + sign * (n.ln_distance - ln_t).exp();
+                Complex64::new(ln_t + z.norm().ln(), argument(z))
+            }
+        }
+    }
+
     /// Exponent of a point.
     pub(crate) fn exponent(&self, j: usize) -> f64 {
         self.views[j].self_exponent
@@ -430,6 +451,9 @@ impl PowerProduct {
         mut visit: impl FnMut(Complex64, Scaled, f64, f64),
     ) -> (f64, Complex64) {
         let view = &self.views[anchor];
+        // Counted from the end that is nearer to the anchor: from a far end its digits would be lost.
+        let backward = from.norm_sqr() > to.norm_sqr();
+        let (from, to) = if backward { (to, from) } else { (from, to) };
         let (step, length) = (to - from, (to - from).norm());
         let own = view.self_exponent;
         let mut start = 0.0;
@@ -459,7 +483,7 @@ impl PowerProduct {
             }
             start = end;
         }
-        ((1.0 + own) * view.ln_unit, step)
+        ((1.0 + own) * view.ln_unit, if backward { -step } else { step })
     }
 
     /// Signed places of the points other than the anchor, as `(index, x_anchor − x_j)` in anchor units; points too far

@@ -317,6 +317,11 @@ impl FieldBasis {
     fn references(&self, field: &Field) -> Vec<Complex64> {
         let n = self.arcs.n;
         let m = self.fine.n_points();
+        if self.arcs.gaps.is_empty() {
+            return (0..m)
+                .map(|i| self.all_held(field, HalfPlanePoint::new(i, self.reference_offset(i))))
+                .collect();
+        }
         // Start at a line point with a known potential: the end of the first held side that has a finite end.
         let base = (0..n).find(|&k| self.arcs.electrode[k].is_some()).unwrap_or(0);
         let (start, value) = {
@@ -420,8 +425,22 @@ impl FieldBasis {
     }
 
     fn potential_at(&self, field: &Field, at: HalfPlanePoint) -> Complex64 {
+        if self.arcs.gaps.is_empty() {
+            return self.all_held(field, at);
+        }
         let terms: Complex64 = self.terms(field).map(|(c, t)| c * self.term_integral(t, at)).sum();
         field.reference[at.anchor] + terms
+    }
+
+    /// With every side held: `φ = φ(+∞) + Σ (jump/π) arg(ζ − c)`, `ψ = −Σ (jump/π) ln |ζ − c|`.
+    fn all_held(&self, field: &Field, at: HalfPlanePoint) -> Complex64 {
+        let base = field.values[self.arcs.n - 2].unwrap_or(0.0);
+        let jumps = self.poles.iter().zip(&field.poles).filter(|(_, k)| **k != 0.0);
+        let turned = jumps.map(|((c, term), k)| {
+            let ln = term.product.ln_from(self.fine_of[*c], at);
+            Complex64::new(k * ln.im, -k * ln.re)
+        });
+        turned.sum::<Complex64>() + base
     }
 
     /// `W'(ζ)` in the line's unit.
