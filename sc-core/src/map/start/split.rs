@@ -163,7 +163,7 @@ fn nearest_bend(corners: &[Corner], a: Point, b: Point) -> f64 {
     let side = b - a;
     corners
         .iter()
-        .filter(|c| c.alpha != 1.0)
+        .filter(|c| (c.alpha - 1.0).abs() > 0.0)
         .map(|c| {
             let along = (((c.at - a) * side.conj()).re / side.norm_sqr()).clamp(0.0, 1.0);
             (c.at - (a + side * along)).norm()
