@@ -12,8 +12,34 @@ pub struct GapLine {
     log_gaps: Vec<f64>,
 }
 
-/// Beyond this spread of `y` plain sums of gaps would leave the range of `f64`.
-const PLAIN_SPREAD: f64 = 600.0;
+/// The unit of a running sum is raised when a gap is `e^300` of it.
+const RAISE: f64 = 300.0;
+
+/// A running sum of gaps, `e^unit · total`.
+#[derive(Default)]
+struct Outward {
+    unit: Option<f64>,
+    total: f64,
+}
+
+impl Outward {
+    fn add(&mut self, y: f64) {
+        let unit = match self.unit {
+            Some(unit) if y < unit + RAISE => unit,
+            Some(unit) => {
+                self.total *= (unit - y).exp();
+                y
+            }
+            None => y,
+        };
+        self.unit = Some(unit);
+        self.total += (y - unit).exp();
+    }
+
+    fn ln(&self) -> f64 {
+        self.unit.unwrap_or(0.0) + self.total.ln()
+    }
+}
 
 impl GapLine {
     /// A line of `log_gaps.len() + 1` points.
@@ -33,31 +59,29 @@ impl GapLine {
 
     /// `ln |x_j − x_anchor|` for every point `j`; `−∞` at the anchor itself.
     pub fn ln_distances(&self, anchor: usize) -> Vec<f64> {
+        let mut out = vec![f64::NEG_INFINITY; self.n_points()];
+        self.ln_distances_where(anchor, |_| true, &mut out);
+        out
+    }
+
+    /// The same for the points that `wanted` picks; the others are left as they are. `out` has one place per point.
+    pub(crate) fn ln_distances_where(&self, anchor: usize, wanted: impl Fn(usize) -> bool, out: &mut [f64]) {
         let n = self.n_points();
-        let mut out = vec![f64::NEG_INFINITY; n];
-        let (low, high) = self.spread();
-        if high - low < PLAIN_SPREAD {
-            // One exponential a gap, then plain sums outward from the anchor.
-            let base = 0.5 * (low + high);
-            let mut sum = 0.0;
-            for j in anchor + 1..n {
-                sum += (self.log_gaps[j - 1] - base).exp();
-                out[j] = sum.ln() + base;
-            }
-            sum = 0.0;
-            for j in (0..anchor).rev() {
-                sum += (self.log_gaps[j] - base).exp();
-                out[j] = sum.ln() + base;
-            }
-        } else {
-            for j in anchor + 1..n {
-                out[j] = ln_add(out[j - 1], self.log_gaps[j - 1]);
-            }
-            for j in (0..anchor).rev() {
-                out[j] = ln_add(out[j + 1], self.log_gaps[j]);
+        // Plain sums outward from the anchor, in a unit that is raised when a gap would leave the range of `f64`.
+        let mut sum = Outward::default();
+        for j in anchor + 1..n {
+            sum.add(self.log_gaps[j - 1]);
+            if wanted(j) {
+                out[j] = sum.ln();
             }
         }
-        out
+        sum = Outward::default();
+        for j in (0..anchor).rev() {
+            sum.add(self.log_gaps[j]);
+            if wanted(j) {
+                out[j] = sum.ln();
+            }
+        }
     }
 
     /// `ln(x_b − x_a)` for `a < b`.

@@ -584,7 +584,8 @@ fn one_side(line: &GapLine, rules: &RuleSet, side: usize, want_derivatives: bool
         // From the last point to +∞, or (mirrored) from −∞ to the first.
         let anchor = if side == m - 1 { m - 1 } else { 0 };
         let Some(rule) = &rules.at_infinity else { return (f64::INFINITY, row) };
-        let distances = line.ln_distances(anchor);
+        let mut distances = vec![f64::NEG_INFINITY; m];
+        line.ln_distances_where(anchor, |j| singular(&j), &mut distances);
         let order: Vec<usize> = if anchor == 0 {
             (1..m).filter(singular).collect()
         } else {
@@ -607,7 +608,10 @@ fn one_side(line: &GapLine, rules: &RuleSet, side: usize, want_derivatives: bool
         }
         return (out.ln(), row);
     }
-    let (from_left, from_right) = (line.ln_distances(side), line.ln_distances(side + 1));
+    let mut from_left = vec![f64::NEG_INFINITY; m];
+    let mut from_right = from_left.clone();
+    line.ln_distances_where(side, |j| singular(&j), &mut from_left);
+    line.ln_distances_where(side + 1, |j| singular(&j), &mut from_right);
     let around = Surroundings {
         left: (0..side).rev().filter(singular).collect(),
         right: (side + 2..m).filter(singular).collect(),
