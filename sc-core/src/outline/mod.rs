@@ -10,6 +10,7 @@
 
 mod angles;
 mod arrangement;
+mod fabric;
 mod faults;
 mod heading;
 mod locate;
@@ -23,6 +24,7 @@ mod tests;
 use num_complex::Complex64;
 use robust::{Coord, orient2d};
 
+pub use fabric::{Fabric, FabricFault, MAX_CONTRAST, Stretch};
 pub use faults::{OutlineFault, OutlineFaults, OutlineWarning, SideIdx, VertexIdx, Warned};
 pub use locate::{Containment, Nearest};
 pub use validate::{COINCIDENCE, MAX_COORDINATE, MAX_HEADING, MAX_REMOTENESS, MIN_SIZE};
