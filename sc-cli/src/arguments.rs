@@ -139,6 +139,9 @@ pub struct DrawArguments {
     /// Width of the picture in pixels
     #[arg(long, value_name = "PIXELS", value_parser = pixels, default_value = "1000")]
     pub width: u32,
+    /// Draw the section stretched so that its layered fabric conducts alike in all directions
+    #[arg(long)]
+    pub stretched: bool,
     /// Number the vertices, as the outline lists them, from 0
     #[arg(long)]
     pub vertex_numbers: bool,

@@ -7,15 +7,20 @@ const MODEL: &str = "The section is taken as plane, steady and of one uniform ma
     there is no free surface, no layering of materials and nothing that changes along the run. The error bounds are \
     those of the computation and say nothing of these assumptions.";
 
+/// What a layered fabric adds.
+const FABRIC: &str = "Layered fabric: the field depends on the ratio of the conductivities along and across the layers, \
+    which is seldom measured and often known no better than each of them. Vary it, and the dip, before relying on a \
+    number.";
+
 /// The cautions of a trade: what can hurt someone first, then the limits.
-pub fn cautions(trade: Trade) -> Vec<&'static str> {
+pub fn cautions(trade: Trade, layered: bool) -> Vec<&'static str> {
     let own: &[&str] = match trade {
         Trade::Seepage => &[
             "Piping and heave: a computed gradient does not show a structure to be safe. Grading, filters, layers, \
              uplift of a soil block, erosion along the structure and defects are not in the section; follow the local \
              code, and let a licensed engineer judge the result.",
             "Hydraulic conductivity is often known no better than to a factor of ten (common practice): the fluxes are \
-             as uncertain as that, however small their error bounds. Heads and gradients do not depend on it.",
+             as uncertain as that, however small their error bounds. Heads and gradients do not depend on its size.",
         ],
         Trade::Heat => &[
             "Mould, condensation and frost: temperatures computed here hold no moisture, no moving air and no change \
@@ -33,5 +38,5 @@ pub fn cautions(trade: Trade) -> Vec<&'static str> {
         ],
         Trade::Plain => &[],
     };
-    own.iter().copied().chain([MODEL]).collect()
+    own.iter().copied().chain(layered.then_some(FABRIC)).chain([MODEL]).collect()
 }

@@ -63,7 +63,7 @@ pub fn document_of(prepared: &Prepared, solution: &Solution, checked: bool) -> R
         error: Number(solution.relative_error()),
         bound: if checked { TWO_SOLUTIONS } else { ONE_SOLUTION },
         warnings,
-        cautions: cautions(prepared.file.trade),
+        cautions: cautions(prepared.file.trade, !prepared.stretch.is_none()),
     })
 }
 
@@ -170,7 +170,7 @@ impl Collect<'_> {
     }
 
     fn sides(&self) -> Vec<Side> {
-        let outline = self.prepared.section.outline();
+        let outline = &self.prepared.outline;
         (self.prepared.file.side_names().into_iter())
             .map(|name| {
                 let electrode = self.prepared.electrodes.iter().position(|e| e == name);
@@ -195,18 +195,20 @@ impl Collect<'_> {
         let probes = &self.prepared.probes;
         let places: Vec<(&PlacedProbe, Place)> =
             probes.iter().flat_map(|p| p.places.iter().map(move |&place| (p, place))).collect();
-        let points: Vec<Point> = places
+        let stretched: Vec<Place> =
+            places.iter().map(|&(_, place)| self.prepared.stretched_place(place)).collect();
+        let points: Vec<Point> = stretched
             .iter()
-            .filter_map(|(_, place)| match place {
+            .filter_map(|place| match place {
                 Place::At(z) => Some(*z),
                 Place::OnSide { .. } => None,
             })
             .collect();
         let mut inside = self.solution.probe_many(&points).into_iter();
-        let on_sides: Vec<Option<Result<answers::Probe, ProbeError>>> = places
+        let on_sides: Vec<Option<Result<answers::Probe, ProbeError>>> = stretched
             .par_iter()
             .with_min_len(64)
-            .map(|(_, place)| match *place {
+            .map(|place| match *place {
                 Place::At(_) => None,
                 Place::OnSide { side, s } => Some(self.solution.probe_on_side(side, s)),
             })
@@ -218,26 +220,34 @@ impl Collect<'_> {
                 Place::At(z) => ProbeError::NotFinite { x: z.re, y: z.im },
                 Place::OnSide { side, s } => ProbeError::NoSuchPlace { side, s },
             };
-            out.push(self.probe(probe, found.unwrap_or_else(|| Err(not_finite()))?));
+            out.push(self.probe(probe, place, found.unwrap_or_else(|| Err(not_finite()))?));
         }
         let warnings = infinite_probes(&out);
         Ok((out, warnings))
     }
 
-    fn probe(&self, placed: &PlacedProbe, found: answers::Probe) -> Probe {
-        // Gradients of the core are per length unit.
+    fn probe(&self, placed: &PlacedProbe, place: Place, found: answers::Probe) -> Probe {
+        let stretch = &self.prepared.stretch;
+        // Gradients of the core are those of the stretched section, per length unit.
         let (gradient, gradient_error) = match found.gradient {
             answers::Gradient::Finite { components, error } => {
+                let gradient = stretch.gradient_to_true(Point::new(components[0], components[1]));
                 let per = |v: f64| Number(v / self.scales.per_length);
-                (Gradient::Finite(components.map(per)), error / self.scales.per_length)
+                let error = error * stretch.largest_factor();
+                (Gradient::Finite([gradient.re, gradient.im].map(per)), error / self.scales.per_length)
             }
             answers::Gradient::Infinite => (Gradient::Infinite(Number(f64::INFINITY)), 0.0),
         };
         let side = found.side.and_then(|k| self.prepared.side_name(k)).map(str::to_owned);
-        let s = found.s.filter(|_| side.is_some()).map(Number);
+        let s = match place {
+            Place::OnSide { s, .. } => Some(s),
+            Place::At(_) => found.side.zip(found.s).map(|(k, s)| self.prepared.true_distance(k, s)),
+        };
+        let s = s.filter(|_| side.is_some()).map(Number);
+        let at = self.prepared.point_of(place);
         Probe {
             name: placed.name.clone(),
-            at: [Number(found.at.re), Number(found.at.im)],
+            at: [Number(at.re), Number(at.im)],
             side,
             s,
             potential: Number(found.potential.value),
@@ -253,7 +263,7 @@ impl Collect<'_> {
     }
 
     fn corners(&self) -> Vec<Corner> {
-        let outline = self.prepared.section.outline();
+        let outline = &self.prepared.outline;
         let n = outline.n();
         let mut corners: Vec<Corner> = (0..n)
             .filter_map(|k| {
@@ -262,13 +272,14 @@ impl Collect<'_> {
                 // |∇φ| = c r^e with lengths in the length unit u: in metres c u^−(1+e).
                 let power = 1.0 + corner.exponent;
                 let factor = self.scales.per_length.powf(-power);
-                let coefficient = corner.coefficient.scaled(factor);
+                let coefficient =
+                    corner.coefficient.scaled(factor * self.coefficient_to_true(k, corner.exponent));
                 let name = |side: usize| self.prepared.side_name(side).map(str::to_owned);
                 Some(Corner {
                     vertex: outline.given_vertex(k).0,
                     at: [Number(at.re), Number(at.im)],
                     sides: [name((k + n - 1) % n), name(k)],
-                    angle: Number(180.0 * corner.alpha),
+                    angle: Number(180.0 * outline.alpha()[k]),
                     exponent: Number(corner.exponent),
                     coefficient: Number(coefficient.value),
                     error: Number(coefficient.error),
@@ -279,6 +290,20 @@ impl Collect<'_> {
             .collect();
         corners.sort_by_key(|c| c.vertex);
         corners
+    }
+
+    /// The factor from the coefficient of a vertex in the stretched section to that in the true one. There
+    /// `|∇φ| = c r^e` has a coefficient for each direction; this is the one along the side that leaves the vertex.
+    fn coefficient_to_true(&self, vertex: usize, exponent: f64) -> f64 {
+        let prepared = self.prepared;
+        if prepared.stretch.is_none() {
+            return 1.0;
+        }
+        // Along a held side the gradient is normal to it, along an insulated one it runs with it.
+        let along = prepared.section.outline().side_direction(vertex);
+        let held = prepared.section.electrode_of_side(vertex).is_some();
+        let gradient = if held { along * Point::new(0.0, 1.0) } else { along };
+        prepared.stretch.gradient_to_true(gradient).norm() * prepared.lengthening(vertex).powf(exponent)
     }
 
     fn map(&self) -> Map {

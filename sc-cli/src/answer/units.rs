@@ -32,7 +32,7 @@ impl Scales {
         let conductivity = match material {
             None => 1.0,
             Some(Material::Conductivity(k)) => k,
-            Some(Material::Layered(fabric)) => (fabric.along * fabric.across).sqrt(),
+            Some(Material::Layered(fabric)) => fabric.conductivity(),
             Some(Material::Permittivity(relative)) => VACUUM_PERMITTIVITY * relative,
             Some(Material::SheetResistance(ohm)) => 1.0 / ohm,
         };

@@ -75,7 +75,11 @@ pub const ANSWERS: &[(&str, &str, &str)] = &[
     ("corners[].sides[]", "", "the names of the sides that meet there, or null"),
     ("corners[].angle", "degrees", "interior angle"),
     ("corners[].exponent", "1", "e in |gradient| = c r^e close to the corner"),
-    ("corners[].coefficient", "its unit", "c, with r in the length unit of units.gradient"),
+    (
+        "corners[].coefficient",
+        "its unit",
+        "c, with r in the length unit of units.gradient; in a layered fabric along the side that leaves the vertex",
+    ),
     ("corners[].error", "its unit", "bound of the absolute error of coefficient"),
     ("corners[].unit", "", "the unit of coefficient"),
     ("corners[].infinite", "", "whether the gradient is infinite there"),

@@ -74,10 +74,11 @@ pub fn section_figure(subject: &Subject<'_>, sheet: &Sheet) -> Drawing {
     caption.extend(title(subject, em));
     let line = |text: String, sample| CaptionLine { text, size: em, sample };
     caption.push(line(format!("held side, with its {}", subject.words.level), Some(HELD)));
-    if (0..subject.section.outline().n()).any(|k| subject.section.electrode_of_side(k).is_none()) {
+    if (0..subject.outline.n()).any(|k| subject.section.electrode_of_side(k).is_none()) {
         caption.push(line("insulated side, hatched outside".to_owned(), Some(INSULATED)));
     }
-    page.finish(subject.length_unit, &caption)
+    caption.extend(subject.fabric.map(|f| line(f.section_words(), None)));
+    page.finish(&subject.scale_unit(), &caption)
 }
 
 /// The title as the first line of a caption.
@@ -90,7 +91,7 @@ pub(super) fn title(subject: &Subject<'_>, em: f64) -> Option<CaptionLine> {
 pub(super) fn page_for(subject: &Subject<'_>, sheet: &Sheet) -> Page {
     let width = sheet.page_width();
     let em = lettering(f64::from(width));
-    let outline = subject.section.outline();
+    let outline = subject.outline;
     let window = sheet.window.or_else(|| whole(outline));
     let unit = Window { low: Point::new(0.0, 0.0), high: Point::new(1.0, 1.0) };
     let window = window.unwrap_or(unit);
@@ -165,7 +166,7 @@ fn is_wall(outline: &Outline, side: usize) -> bool {
 
 fn held_runs(subject: &Subject<'_>) -> Vec<Held> {
     let section = subject.section;
-    let outline = section.outline();
+    let outline = subject.outline;
     let n = outline.n();
     let electrode = |k: usize| section.electrode_of_side(k % n);
     let first = (0..n).find(|&k| electrode(k) != electrode(k + n - 1)).unwrap_or(0);
@@ -211,7 +212,7 @@ fn label_of(subject: &Subject<'_>, electrode: usize, em: f64) -> Label {
 /// Draws the outline with its conditions and all lettering that belongs to it.
 pub(super) fn draw_conditions(subject: &Subject<'_>, sheet: &Sheet, page: &mut Page) {
     let section = subject.section;
-    let outline = section.outline();
+    let outline = subject.outline;
     let n = outline.n();
     let run_off = 4.0 * ((page.window.high - page.window.low).norm() + outline.size());
     let weight = (page.em / 15.0).max(0.6);
@@ -271,7 +272,7 @@ fn hatch(outline: &Outline, side: usize, part: &[PagePoint], page: &mut Page) {
 
 /// The name and level of a held run, outside its side, with a leader where it cannot stand beside it.
 fn letter_held(subject: &Subject<'_>, held: &Held, run_off: f64, page: &mut Page) {
-    let outline = subject.section.outline();
+    let outline = subject.outline;
     let em = page.em;
     let label = label_of(subject, held.electrode, em);
     let mut anchors = Vec::new();

@@ -9,6 +9,7 @@
 mod clip;
 mod conditions;
 mod drawing;
+mod fabric;
 mod label;
 mod net;
 mod number;
@@ -21,18 +22,23 @@ mod tests;
 pub use clip::Window;
 pub use conditions::section_figure;
 pub use drawing::{Align, Drawing, Lettering, Mark, PagePoint, Pen};
+pub use fabric::FabricView;
 pub use net::{net_figure, round_drops};
 pub use render::RenderError;
 
 use crate::input::Trade;
-use sc_core::outline::Point;
+use sc_core::outline::{Outline, Point};
 use sc_core::potential::Section;
 
 /// What is drawn, in the user's words and units.
 #[derive(Debug, Clone)]
 pub struct Subject<'a> {
-    /// The section.
+    /// The section: what is held, and at what.
     pub section: &'a Section,
+    /// Its outline in the coordinates that are drawn.
+    pub outline: &'a Outline,
+    /// Its layered fabric, if it has one.
+    pub fabric: Option<FabricView>,
     /// Its title.
     pub title: Option<&'a str>,
     /// Unit of the coordinates; empty if they have none.
@@ -43,6 +49,18 @@ pub struct Subject<'a> {
     pub electrodes: &'a [String],
     /// Marked points with their names.
     pub probes: Vec<(Option<&'a str>, Point)>,
+}
+
+impl Subject<'_> {
+    /// The unit at the scale bar.
+    fn scale_unit(&self) -> String {
+        match self.fabric {
+            Some(FabricView { stretched: true, .. }) => {
+                format!("{} stretched", self.length_unit).trim().to_owned()
+            }
+            _ => self.length_unit.to_owned(),
+        }
+    }
 }
 
 /// The words of a trade in captions and keys.

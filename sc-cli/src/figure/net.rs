@@ -28,7 +28,7 @@ struct Drawn {
     parts: Vec<Vec<PagePoint>>,
 }
 
-/// The figure of a flow net; `shape_factor` as the solution has it.
+/// The figure of a flow net in the coordinates of the subject's outline; `shape_factor` as the solution has it.
 pub fn net_figure(
     subject: &Subject<'_>,
     net: &FlowNet,
@@ -73,7 +73,7 @@ pub fn net_figure(
             sample: Some(scaled(pen)),
         }))
         .collect();
-    page.finish(subject.length_unit, &caption)
+    page.finish(&subject.scale_unit(), &caption)
 }
 
 /// A number of drops with some sixty cells, of those near to it the one with the roundest drop; ten if there is no shape
@@ -98,8 +98,9 @@ fn statements(subject: &Subject<'_>, net: &FlowNet, shape_factor: Option<Bounded
     let drop = with_unit(&tidy(net.increment, 4), subject.words.difference_unit);
     let mut out = Vec::new();
     if net.n_channels.is_finite() {
+        let square = if subject.fabric.is_none_or(|f| f.stretched) { " (cells near square)" } else { "" };
         out.push(format!(
-            "Flow net: {} equal drops of {drop}, {} channels of the same flux as one drop (cells near square)",
+            "Flow net: {} equal drops of {drop}, {} channels of the same flux as one drop{square}",
             net.n_drops,
             tidy(net.n_channels, 4),
         ));
@@ -120,6 +121,7 @@ fn statements(subject: &Subject<'_>, net: &FlowNet, shape_factor: Option<Bounded
         Some(_) => out.push("Shape factor: infinite".to_owned()),
         None => {}
     }
+    out.extend(subject.fabric.map(|f| f.net_words()));
     out
 }
 

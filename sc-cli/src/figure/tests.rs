@@ -149,6 +149,8 @@ fn drawn(case: &Case) -> (Drawing, Drawing) {
     let middle = solution.section().outline().point(0).unwrap_or_default();
     let subject = Subject {
         section: solution.section(),
+        outline: solution.section().outline(),
+        fabric: None,
         title: Some(case.title),
         length_unit: if case.trade == Trade::Plain { "" } else { "m" },
         words: Words::of(case.trade),
@@ -212,6 +214,8 @@ fn a_section_that_opens_to_infinity_is_shown_some_way_into_it() {
     let names = ["right".to_owned(), "left".to_owned()];
     let subject = Subject {
         section: &section,
+        outline: section.outline(),
+        fabric: None,
         title: None,
         length_unit: "m",
         words: Words::of(Trade::Seepage),

@@ -3,7 +3,7 @@
 use super::expression::Formula;
 use super::place::{Placed, Span};
 use super::trade::Trade;
-use sc_core::outline::{Point, Vertex};
+use sc_core::outline::{Fabric, Point, Vertex};
 
 /// Everything a section file says.
 ///
@@ -85,6 +85,18 @@ pub struct LayeredFabric {
     pub across: f64,
     /// Direction of the layers, degrees counter-clockwise from the x axis.
     pub dip: f64,
+}
+
+impl LayeredFabric {
+    /// The fabric as the core takes it.
+    pub fn fabric(&self) -> Fabric {
+        Fabric { along: self.along, across: self.across, dip: self.dip }
+    }
+
+    /// The conductivity of the stretched section, `√(along · across)`.
+    pub fn conductivity(&self) -> f64 {
+        self.fabric().conductivity()
+    }
 }
 
 /// A vertex of the outline, and the name of the side that leaves it.

@@ -3,7 +3,7 @@
 //! The reader puts all of them into the model. When one of them is answered, its lines here go.
 
 use super::fault::{Fault, FaultKind};
-use super::model::{Condition, Datum, Material, Region, SectionFile};
+use super::model::{Condition, Datum, Region, SectionFile};
 use super::place::{Placed, Span};
 
 /// One fault for each use of what is not supported yet.
@@ -17,9 +17,6 @@ pub(super) fn check(section: &SectionFile) -> Vec<Fault> {
     }
     if section.region.value == Region::Outside {
         refuse("the plane outside the outline (`region = \"outside\"`)", section.region.span);
-    }
-    if let Some(Placed { value: Material::Layered(_), span }) = section.material {
-        refuse("a layered fabric (`along`, `across`, `dip`)", span);
     }
     for side in &section.sides {
         match &side.condition.value {

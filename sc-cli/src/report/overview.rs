@@ -27,7 +27,7 @@ pub(super) fn heading(prepared: &Prepared) -> String {
     let file = &prepared.file;
     let title = file.title.as_ref().map_or("Untitled section", |t| t.value.as_str());
     let mut out = format!("{title}\n");
-    let n = prepared.section.outline().n();
+    let n = prepared.outline.n();
     out.push_str(&format!(
         "Trade {}, lengths in {}, {n} vertices, {}\n",
         file.trade.word(),
@@ -59,7 +59,7 @@ fn material_words(prepared: &Prepared) -> String {
 }
 
 fn outline_table(prepared: &Prepared) -> String {
-    let outline = prepared.section.outline();
+    let outline = &prepared.outline;
     let mut table = Table::new(["vertex", "x", "y", "angle", "leaving side", "length", "condition"]);
     for k in 0..outline.n() {
         let coordinate = |of: fn(sc_core::outline::Point) -> f64| {

@@ -5,6 +5,7 @@ use super::overview::heading;
 use super::table::Table;
 use super::wrap::{bullets, wrapped};
 use crate::answer::{Document, Gradient, Number, Probe};
+use crate::input::Material;
 use crate::section::Prepared;
 
 /// Digits of a headline number, and of a number in a table.
@@ -19,8 +20,8 @@ pub fn report(prepared: &Prepared, document: &Document) -> String {
     out.push_str(&fluxes(document));
     out.push_str(&matrix(document));
     out.push_str(&probes(document));
-    out.push_str(&corners(document));
-    out.push_str(&computation(document));
+    out.push_str(&corners(prepared, document));
+    out.push_str(&computation(prepared, document));
     if !document.warnings.is_empty() {
         out.push_str("\nWarnings\n");
         out.push_str(&bullets(&document.warnings));
@@ -163,14 +164,16 @@ fn probes(document: &Document) -> String {
     out
 }
 
-fn corners(document: &Document) -> String {
+fn corners(prepared: &Prepared, document: &Document) -> String {
     if !document.corners.iter().any(|c| c.infinite) {
         return String::new();
     }
     let gradient = &document.units.gradient;
     let length = gradient.rsplit('/').next().unwrap_or("m");
+    let place =
+        if prepared.stretch.is_none() { "from the corner" } else { "along the side that leaves the corner" };
     let mut out = format!(
-        "\nCorners where the gradient is infinite: about c r^e at a small distance r ({length}) from the corner, in {gradient}\n"
+        "\nCorners where the gradient is infinite: about c r^e at a small distance r ({length}) {place}, in {gradient}\n"
     );
     let mut table = Table::new(["vertex", "x", "y", "angle", "c", "e", "between"]);
     for c in document.corners.iter().filter(|c| c.infinite) {
@@ -189,14 +192,35 @@ fn corners(document: &Document) -> String {
     out
 }
 
-fn computation(document: &Document) -> String {
+/// How a layered fabric was dealt with.
+fn stretch_words(prepared: &Prepared) -> String {
+    let Some(Material::Layered(fabric)) = prepared.file.material.map(|m| m.value) else {
+        return String::new();
+    };
+    if prepared.stretch.is_none() {
+        return String::new();
+    }
+    let (along, across) = prepared.stretch.factors();
+    format!(
+        "Solved in stretched coordinates, where the layered fabric conducts alike in all directions: lengths along the \
+         layers times {}, across them times {}, conductivity {}, the root of along times across. The shape factor refers to that \
+         conductivity; positions, lengths and gradients are true ones. ",
+        short(along),
+        short(across),
+        short(fabric.conductivity())
+    )
+}
+
+fn computation(prepared: &Prepared, document: &Document) -> String {
     let gaps = document.map.gaps_log.iter().map(|g| g.0);
     let (low, high) = gaps.fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), g| (l.min(g), h.max(g)));
     let decades = if low <= high { (high - low) / std::f64::consts::LN_10 } else { 0.0 };
+    let onto = if prepared.stretch.is_none() { "section" } else { "stretched section" };
     let text = format!(
-        "Map of a {} onto the section; the prevertex of vertex {} lies at infinity, and of the gaps between \
+        "{}Map of a {} onto the {onto}; the prevertex of vertex {} lies at infinity, and of the gaps between \
          the others the largest is 10^{decades:.1} times the smallest. Side lengths are met to a relative {}. Headline numbers have a relative \
          error of at most {}. The bounds come from {}.",
+        stretch_words(prepared),
         document.map.canonical,
         document.map.at_infinity,
         bound(document.map.residual.0),

@@ -7,10 +7,10 @@ pub use objection::{Objection, ProbeFault, Remark};
 pub use places::{Place, PlacedProbe};
 
 use crate::input::{
-    Condition, Datum, Fault, FaultKind, NamedSide, Placed, SectionFile, Span, read_section_with,
+    Condition, Datum, Fault, FaultKind, Material, NamedSide, Placed, SectionFile, Span, read_section_with,
 };
-use objection::{at_conditions, at_outline, remark_on_conditions, remark_on_outline};
-use sc_core::outline::Outline;
+use objection::{at_conditions, at_fabric, at_outline, remark_on_conditions, remark_on_outline};
+use sc_core::outline::{Containment, Outline, Point, Stretch};
 use sc_core::potential::Section;
 
 /// A section ready to be solved, with the file it came from.
@@ -18,7 +18,12 @@ use sc_core::potential::Section;
 pub struct Prepared {
     /// What the file says.
     pub file: SectionFile,
-    /// The section: one electrode for each held name, in the order of `[sides]`.
+    /// The outline as it is in the ground.
+    pub outline: Outline,
+    /// The stretch that makes a layered fabric conduct alike in all directions.
+    pub stretch: Stretch,
+    /// The section in stretched coordinates: one electrode for each held name, in the order of `[sides]`. Its outline
+    /// has the walking indices of [`Prepared::outline`].
     pub section: Section,
     /// The names of the electrodes.
     pub electrodes: Vec<String>,
@@ -31,18 +36,18 @@ pub struct Prepared {
 impl Prepared {
     /// The name of a side (walking index).
     pub fn side_name(&self, side: usize) -> Option<&str> {
-        let given = self.section.outline().given_side(side).0;
+        let given = self.outline.given_side(side).0;
         self.file.outline.get(given)?.side.as_ref().map(|s| s.value.as_str())
     }
 
     /// A side in words: its name in quotes, or the vertex it leaves.
     pub fn side_words(&self, side: usize) -> String {
-        side_words(&self.file, self.section.outline(), side)
+        side_words(&self.file, &self.outline, side)
     }
 
     /// The sides (walking indices) of a name.
     pub fn sides_named<'a>(&'a self, name: &'a str) -> impl Iterator<Item = usize> + 'a {
-        (0..self.section.outline().n()).filter(move |&k| self.side_name(k) == Some(name))
+        (0..self.outline.n()).filter(move |&k| self.side_name(k) == Some(name))
     }
 
     /// The names of each group of electrodes, in the order of the conductance matrix.
@@ -52,6 +57,72 @@ impl Prepared {
             groups[self.section.group_of(electrode)].push(name.as_str());
         }
         groups
+    }
+
+    /// The distance along a side of the stretched outline, from that along the true one.
+    pub fn stretched_distance(&self, side: usize, s: f64) -> f64 {
+        converted_distance(&self.outline, self.section.outline(), side, s, self.lengthening(side))
+    }
+
+    /// The distance along a side of the true outline, from that along the stretched one.
+    pub fn true_distance(&self, side: usize, s: f64) -> f64 {
+        converted_distance(self.section.outline(), &self.outline, side, s, 1.0 / self.lengthening(side))
+    }
+
+    /// The factor of lengths along a side.
+    pub fn lengthening(&self, side: usize) -> f64 {
+        self.stretch.lengthening(self.outline.side_direction(side))
+    }
+
+    /// The place in the stretched section of one in the true section.
+    pub fn stretched_place(&self, place: Place) -> Place {
+        match place {
+            Place::OnSide { side, s } => Place::OnSide { side, s: self.stretched_distance(side, s) },
+            Place::At(z) if self.stretch.is_none() => Place::At(z),
+            Place::At(z) => {
+                let image = self.stretch.to_stretched(z);
+                // Rounding of the stretch can carry a point just inside over the boundary.
+                if self.section.outline().contains(image) == Containment::Outside {
+                    let nearest = self.outline.nearest_boundary(z);
+                    return Place::OnSide {
+                        side: nearest.side,
+                        s: self.stretched_distance(nearest.side, nearest.s),
+                    };
+                }
+                Place::At(image)
+            }
+        }
+    }
+
+    /// The point of a place in the true section.
+    pub fn point_of(&self, place: Place) -> Point {
+        match place {
+            Place::At(z) => z,
+            Place::OnSide { side, s } => self.outline.place(side, s),
+        }
+    }
+}
+
+/// A distance along a side from one outline to another, in which lengths along it are multiplied by a factor; the ends
+/// of the side stay its ends.
+fn converted_distance(from: &Outline, to: &Outline, side: usize, s: f64, factor: f64) -> f64 {
+    let ((low, high), (first, last)) = (from.side_range(side), to.side_range(side));
+    if s <= low {
+        first
+    } else if s >= high {
+        last
+    } else {
+        (s * factor).clamp(first, last)
+    }
+}
+
+/// The stretch of a material.
+fn stretch_of(file: &SectionFile) -> Result<Stretch, Vec<Fault<Objection>>> {
+    match file.material {
+        Some(Placed { value: Material::Layered(f), span }) => {
+            f.fabric().stretch().map_err(|fault| vec![at_fabric(fault, span)])
+        }
+        _ => Ok(Stretch::NONE),
     }
 }
 
@@ -75,9 +146,10 @@ pub fn prepare(text: &str, set: &[(String, f64)]) -> Result<Prepared, Vec<Fault<
         read.warnings.into_iter().map(|w| w.mapped(Remark::Reading)).collect();
     let file = read.value;
     compose(file, &mut remarks)
-        .map(|(file, section, electrodes, probes)| {
+        .map(|(file, composed)| {
             sort_and_locate(&mut remarks, text);
-            Prepared { file, section, electrodes, probes, remarks }
+            let Composed { outline, stretch, section, electrodes, probes } = composed;
+            Prepared { file, outline, stretch, section, electrodes, probes, remarks }
         })
         .map_err(|mut faults| {
             sort_and_locate(&mut faults, text);
@@ -85,9 +157,18 @@ pub fn prepare(text: &str, set: &[(String, f64)]) -> Result<Prepared, Vec<Fault<
         })
 }
 
-type Composed = (SectionFile, Section, Vec<String>, Vec<PlacedProbe>);
+struct Composed {
+    outline: Outline,
+    stretch: Stretch,
+    section: Section,
+    electrodes: Vec<String>,
+    probes: Vec<PlacedProbe>,
+}
 
-fn compose(file: SectionFile, remarks: &mut Vec<Fault<Remark>>) -> Result<Composed, Vec<Fault<Objection>>> {
+fn compose(
+    file: SectionFile,
+    remarks: &mut Vec<Fault<Remark>>,
+) -> Result<(SectionFile, Composed), Vec<Fault<Objection>>> {
     let vertices: Vec<_> = file.outline.iter().map(|v| v.vertex).collect();
     let outline = match Outline::new(&vertices) {
         Ok(outline) => outline,
@@ -95,18 +176,21 @@ fn compose(file: SectionFile, remarks: &mut Vec<Fault<Remark>>) -> Result<Compos
     };
     remarks.extend(outline.warnings.iter().map(|&w| remark_on_outline(w, &file)));
     let outline = outline.value;
+    let stretch = stretch_of(&file)?;
+    let span = file.material.as_ref().map_or_else(Span::default, |m| m.span);
+    let stretched = outline.stretched(&stretch).map_err(|fault| vec![at_fabric(fault, span)])?;
     let held = held_sides(&file)?;
     let electrode_of = |name: &Placed<String>| held.iter().position(|(s, _)| s.name.value == name.value);
     let electrodes: Vec<Option<usize>> =
         file.outline.iter().map(|v| v.side.as_ref().and_then(electrode_of)).collect();
     let names: Vec<Placed<String>> = held.iter().map(|(s, _)| s.name.clone()).collect();
     let levels: Vec<f64> = held.iter().map(|(_, level)| *level).collect();
-    let (section, warnings) = Section::new(outline, &electrodes, &levels)
+    let (section, warnings) = Section::new(stretched, &electrodes, &levels)
         .map_err(|faults| faults.into_iter().map(|f| at_conditions(f, &file, &names)).collect::<Vec<_>>())?;
     remarks.extend(warnings.into_iter().map(|w| remark_on_conditions(w, &file)));
-    let probes = places::place_probes(&file, section.outline())?;
-    let names = names.into_iter().map(|n| n.value).collect();
-    Ok((file, section, names, probes))
+    let probes = places::place_probes(&file, &outline)?;
+    let electrodes = names.into_iter().map(|n| n.value).collect();
+    Ok((file, Composed { outline, stretch, section, electrodes, probes }))
 }
 
 /// The held names with their levels, in the order of `[sides]`.

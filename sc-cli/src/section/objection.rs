@@ -2,7 +2,7 @@
 
 use crate::input::{Fault, FaultKind, Placed, SectionFile, Span, Warning};
 use crate::outcome::Status;
-use sc_core::outline::{OutlineFault, OutlineWarning, SideIdx, VertexIdx};
+use sc_core::outline::{FabricFault, OutlineFault, OutlineWarning, SideIdx, VertexIdx};
 use sc_core::potential::{SectionFault, SectionWarning};
 use thiserror::Error;
 
@@ -19,6 +19,9 @@ pub enum Objection {
     /// A rule of the conditions.
     #[error(transparent)]
     Conditions(#[from] SectionFault),
+    /// A layered fabric that cannot be answered.
+    #[error(transparent)]
+    Fabric(#[from] FabricFault),
     /// A place where no value can be given.
     #[error(transparent)]
     Probe(#[from] ProbeFault),
@@ -28,7 +31,7 @@ impl Objection {
     /// The exit status it leads to: a file that is wrong, or one that asks for what cannot be answered.
     pub fn status(&self) -> Status {
         match self {
-            Self::Probe(_) => Status::Unanswered,
+            Self::Probe(_) | Self::Fabric(_) => Status::Unanswered,
             _ => Status::Wrong,
         }
     }
@@ -172,6 +175,15 @@ pub(super) fn at_outline(fault: OutlineFault, file: &SectionFile) -> Fault<Objec
         placed = placed.related(other, "the other");
     }
     placed
+}
+
+/// The place of a fault of the fabric: the material.
+pub(super) fn at_fabric(fault: FabricFault, material: Span) -> Fault<Objection> {
+    let hint = match fault {
+        FabricFault::Dip { .. } => "write the dip in degrees between -360 and 360",
+        _ => "check the units of `along` and `across`",
+    };
+    Fault::new(Objection::from(fault), material).hint(hint)
 }
 
 /// The place of a fault in the conditions.

@@ -13,10 +13,6 @@ fn what_is_not_supported_yet_is_refused_by_name() {
             square("within = [{ at = [0, 0] }, { at = [1, 0] }]", "{ held = 0 }"),
             "1:11 an inner polygon (`within`)",
         ),
-        (
-            square("material.conductivity = { along = 2, across = 1, dip = 0 }", "{ held = 0 }"),
-            "1:25 a layered fabric (`along`, `across`, `dip`)",
-        ),
         (square("", "{ held = \"x\" }"), "5:17 a held value that varies"),
         (square("", "{ held = { table = [[0, 1], [1, 2]] } }"), "5:17 a held value from a table"),
         (square("", "{ inflow = 0.2 }"), "5:19 a prescribed `inflow`"),
