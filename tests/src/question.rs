@@ -1,13 +1,14 @@
 //! The question of a reference case put to the program.
 
-use sc_core::answers::{Bounded, ProbeError, Solution};
+use num_complex::Complex64;
+use sc_core::answers::{ArmFlow, Bounded, ChannelError, ProbeError, Solution, channel_excess};
 use sc_core::map::{HalfPlaneMap, InverseError, MapError, MapOptions};
 use sc_core::outline::{Outline, Vertex as CoreVertex};
 use thiserror::Error;
 
 use crate::held_section::{HeldSection, Refused, walking_side, walking_vertex};
 use crate::prevertices::Prevertices;
-use crate::reference::{Ask, Case, Condition, Place, Value, Vertex};
+use crate::reference::{Arm, Ask, Case, Condition, ExcessOf, Place, Value, Vertex};
 
 /// What the program answers: one number, or the entries of a matrix row by row.
 #[derive(Debug, Clone, PartialEq)]
@@ -71,6 +72,9 @@ pub enum NotAnswered {
     /// There is no shape factor, the conditions being others than two levels.
     #[error("no shape factor")]
     NoShapeFactor,
+    /// By the channels of the section.
+    #[error(transparent)]
+    Channel(#[from] ChannelError),
     /// The gradient asked for is not finite and not zero.
     #[error("the gradient at vertex {vertex} goes as the distance to the power {exponent}")]
     NotRegular {
@@ -134,13 +138,19 @@ impl Row {
 pub fn waiting(case: &Case) -> Option<Waiting> {
     if case.sides.iter().any(|side| matches!(side, Condition::Function(_))) {
         Some(Waiting::GivenData)
-    } else if matches!(case.ask, Ask::Excess { .. } | Ask::PotentialIntegral { .. })
+    } else if matches!(case.ask, Ask::PotentialIntegral { .. })
+        || is_excess_from_a_held_side(case)
         || case.vertices.is_empty()
     {
         Some(Waiting::Question)
     } else {
         None
     }
+}
+
+/// A resistance from a held side to the end of an arm, which is asked of neither kind of excess.
+fn is_excess_from_a_held_side(case: &Case) -> bool {
+    matches!(&case.ask, Ask::Excess { of: ExcessOf::Resistance, source, .. } if source.is_empty())
 }
 
 /// The program's answer to a case.
@@ -160,6 +170,15 @@ pub fn answer(case: &Case) -> Result<Found, NotAnswered> {
         of_field(case, &section.solve()?)
     } else {
         let outline = Outline::new(&vertices(case)).map_err(Refused::Outline)?.value;
+        if let Ask::Excess { arms, multiplier, source, .. } = &case.ask {
+            let flow = |arm: &Arm| {
+                // One current 1 enters; what leaves is shared by the arms as the squares of their shares say.
+                let current = if source.contains(&arm.vertex) { 1.0 } else { -arm.share.sqrt() };
+                ArmFlow { end: walking_vertex(&outline, arm.vertex), current, from: arm.from }
+            };
+            let flows: Vec<ArmFlow> = arms.iter().map(flow).collect();
+            return Ok(Found::bounded(channel_excess(&outline, &flows)?.scaled(*multiplier)));
+        }
         of_map(case, &HalfPlaneMap::solve(&outline, &MapOptions::default())?)
     }
 }
@@ -211,8 +230,43 @@ fn of_field(case: &Case, solution: &Solution) -> Result<Found, NotAnswered> {
             let matrix = solution.matrix();
             Ok(Found { values: matrix.values.concat(), error: Some(matrix.error) })
         }
+        Ask::Excess { arms, multiplier, .. } => {
+            Ok(Found::bounded(excess_between_faces(solution, arms)?.scaled(*multiplier)))
+        }
         _ => of_map(case, solution.map()),
     }
+}
+
+/// Widths of an arm after which its flow is straight to all digits.
+const STRAIGHT_AFTER: f64 = 20.0;
+
+/// The flux between the faces of a section with infinite arms less that of the straight arms: the flux through the parts
+/// of the sides at the high level up to a cut through each arm, less its length over its width.
+fn excess_between_faces(solution: &Solution, arms: &[Arm]) -> Result<Bounded, NotAnswered> {
+    let outline = solution.section().outline();
+    let n = outline.n();
+    let high = solution.section().levels().iter().copied().fold(f64::NEG_INFINITY, f64::max);
+    let is_high = |k: usize| solution.section().level_of_side(k).is_some_and(|v| v >= high);
+    let cut = |vertex: usize| {
+        let arm = arms.iter().find(|arm| walking_vertex(outline, arm.vertex) == vertex);
+        arm.map(|arm| (arm, outline.side_direction(vertex + n - 1)))
+    };
+    // Distance along a side from its finite end `corner` to the cut through the arm.
+    let reach = |vertex: usize, corner: Complex64| {
+        cut(vertex).map_or(f64::INFINITY, |(arm, heading)| {
+            STRAIGHT_AFTER * arm.width - ((corner - arm.from) * heading.conj()).re
+        })
+    };
+    let mut sum = Bounded::new(0.0, 0.0);
+    for side in (0..n).filter(|&k| is_high(k)) {
+        let flux = match (outline.point(side), outline.point(side + 1)) {
+            (Some(corner), None) => solution.part_flux(side, 0.0, reach((side + 1) % n, corner))?,
+            (None, Some(corner)) => solution.part_flux(side, -reach(side, corner), 0.0)?,
+            _ => solution.side_flux(side),
+        };
+        sum = Bounded::new(sum.value + flux.value, sum.error + flux.error);
+    }
+    Ok(Bounded::new(sum.value - STRAIGHT_AFTER * arms.len() as f64, sum.error))
 }
 
 fn of_map(case: &Case, map: &HalfPlaneMap) -> Result<Found, NotAnswered> {
