@@ -84,6 +84,11 @@ impl Uniform {
         Uniform(Pcg64::seed_from_u64(state))
     }
 
+    /// One of many independent sequences from one first state.
+    pub(crate) fn stream(state: u128, stream: u128) -> Uniform {
+        Uniform(Pcg64::new(state, stream))
+    }
+
     /// A number between two others.
     pub(crate) fn between(&mut self, low: f64, high: f64) -> f64 {
         low + (high - low) * self.next()
@@ -103,7 +108,7 @@ fn cross(a: Complex64, b: Complex64) -> f64 {
     a.re * b.im - a.im * b.re
 }
 
-fn segments_cross(a: Complex64, b: Complex64, c: Complex64, d: Complex64) -> bool {
+pub(crate) fn segments_cross(a: Complex64, b: Complex64, c: Complex64, d: Complex64) -> bool {
     cross(b - a, c - a) * cross(b - a, d - a) < 0.0 && cross(d - c, a - c) * cross(d - c, b - c) < 0.0
 }
 
