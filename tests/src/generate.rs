@@ -123,7 +123,7 @@ fn clearance(vertices: &[Complex64], z: Complex64) -> f64 {
     (0..n).map(|k| segment_distance(z, vertices[k], vertices[(k + 1) % n])).fold(f64::MAX, f64::min)
 }
 
-fn contains(vertices: &[Complex64], z: Complex64) -> bool {
+pub(crate) fn contains(vertices: &[Complex64], z: Complex64) -> bool {
     let n = vertices.len();
     (0..n).fold(false, |inside, k| {
         let (a, b) = (vertices[k], vertices[(k + 1) % n]);

@@ -11,3 +11,4 @@ pub mod question;
 pub mod rational;
 pub mod reference;
 pub mod robustness;
+pub mod two_sided;

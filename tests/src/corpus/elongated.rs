@@ -56,7 +56,7 @@ pub(super) fn channel(draw: &mut Draw, n: usize) -> Vec<Complex64> {
     match draw.index(3) {
         0 => uneven(draw, n, length),
         1 => {
-            let legs = (n / 4).clamp(1, 48);
+            let legs = (n / 4).clamp(2, 48);
             let leg = (length / legs as f64).max(1.3);
             let pitch = 1.0 + draw.log_between(0.05, 3.0);
             thickened(&folded(legs, leg, pitch))

@@ -3,10 +3,11 @@
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::time::{Duration, Instant};
 
-use sc_core::answers::{Solution, SolveError, SolveOptions};
+use sc_core::answers::{Bounded, Solution, SolveError, SolveOptions};
 use sc_core::map::MapError;
 use thiserror::Error;
 
+use super::check::Check;
 use super::{Case, Family};
 use crate::held_section::Refused;
 use crate::robustness::{RECIPROCITY, RESIDUAL_AT_WORST};
@@ -21,7 +22,7 @@ pub struct Figures {
     /// Relative error that the program states.
     pub estimate: f64,
     /// Conductance between the two levels, if there are two.
-    pub conductance: Option<f64>,
+    pub conductance: Option<Bounded>,
     /// `|G·G′ − 1|`, the two from independent maps and by different formulas; with two held runs only.
     pub reciprocity: Option<f64>,
     /// Decades between the largest and the smallest gap of the prevertices.
@@ -89,6 +90,8 @@ pub struct Outcome {
     pub time: Duration,
     /// The figures, or why there are none.
     pub result: Result<Figures, Failure>,
+    /// What independent methods say of it.
+    pub checks: Vec<Check>,
 }
 
 impl Outcome {
@@ -96,6 +99,12 @@ impl Outcome {
     #[must_use]
     pub fn name(&self) -> String {
         format!("{}/{}", self.family.name(), self.index)
+    }
+
+    /// Whether an independent method does not agree.
+    #[must_use]
+    pub fn is_contradicted(&self) -> bool {
+        self.checks.iter().any(|check| check.verdict.as_ref().is_ok_and(|verdict| !verdict.agrees))
     }
 }
 
@@ -116,7 +125,7 @@ pub fn examine(case: &Case, check: bool) -> Outcome {
         Ok(Ok(solution)) => figures(&solution),
     };
     let sides = case.section.vertices.len();
-    Outcome { family: case.family, index: case.index, sides, time, result }
+    Outcome { family: case.family, index: case.index, sides, time, result, checks: Vec::new() }
 }
 
 fn figures(solution: &Solution) -> Result<Figures, Failure> {
@@ -125,7 +134,7 @@ fn figures(solution: &Solution) -> Result<Figures, Failure> {
         iterations: solution.map().effort().iterations,
         residual: solution.residual(),
         estimate: solution.relative_error(),
-        conductance: solution.shape_factor().map(|g| g.value),
+        conductance: solution.shape_factor(),
         reciprocity: solution.reciprocity(),
         decades: (high - low) / std::f64::consts::LN_10,
     };
@@ -137,7 +146,7 @@ fn figures(solution: &Solution) -> Result<Figures, Failure> {
     let named = [
         ("residual", Some(figures.residual)),
         ("estimate", Some(figures.estimate)),
-        ("conductance", figures.conductance),
+        ("conductance", figures.conductance.map(|g| g.value)),
         ("G·G′", figures.reciprocity),
     ];
     if let Some((name, _)) = named.iter().find(|(_, x)| x.is_some_and(|x| !x.is_finite())) {

@@ -4,6 +4,7 @@ use std::collections::BTreeMap;
 use std::fmt::Write;
 
 use super::Family;
+use super::check::{Check, Method, Verdict};
 use super::outcome::{Failure, Figures, Outcome};
 use crate::robustness::median;
 
@@ -42,6 +43,7 @@ pub fn report(outcomes: &[Outcome], checked: bool, machine: Option<&str>) -> Str
     }
     page += &row("all", &outcomes.iter().collect::<Vec<_>>());
     page += &failures(outcomes);
+    page += &checks(outcomes);
     page += &by_sides(outcomes);
     page += &ranked("Slowest", outcomes, |outcome| outcome.time.as_secs_f64());
     page += &ranked("Largest stated errors", outcomes, |outcome| {
@@ -91,6 +93,55 @@ fn failures(outcomes: &[Outcome]) -> String {
     for (outcome, why) in failed {
         let _ =
             writeln!(page, "- {}/{} ({} sides): {why}", outcome.family.name(), outcome.index, outcome.sides);
+    }
+    page
+}
+
+/// What the independent methods say.
+fn checks(outcomes: &[Outcome]) -> String {
+    let mut page = String::from(
+        "\n## Independent checks\n\n\
+         One in fifty, by methods that share no code with the map: agreement within both bounds. \
+         Uncertainty of the method in parts of the conductance.\n\n\
+         | method | family | cases | agree | no answer | uncertainty, median / largest |\n|---|---|--:|--:|--:|--:|\n",
+    );
+    let mut notes = String::new();
+    for (method, name) in
+        [(Method::TwoSided, "trial functions (two-sided)"), (Method::Rational, "rational least squares")]
+    {
+        for (family, _) in Family::ALL {
+            let members = outcomes.iter().filter(|outcome| outcome.family == family);
+            let all: Vec<(&Outcome, &Check)> = members
+                .flat_map(|outcome| outcome.checks.iter().map(move |check| (outcome, check)))
+                .filter(|(_, check)| check.method == method)
+                .collect();
+            let verdicts: Vec<&Verdict> = all.iter().filter_map(|(_, c)| c.verdict.as_ref().ok()).collect();
+            for (outcome, check) in &all {
+                match &check.verdict {
+                    Ok(verdict) if !verdict.agrees => {
+                        let _ = writeln!(notes, "- {} is contradicted: {verdict:?}", outcome.name());
+                    }
+                    Err(why) => {
+                        let _ = writeln!(notes, "- {}, no answer by {name}: {why}", outcome.name());
+                    }
+                    Ok(_) => {}
+                }
+            }
+            let agree = verdicts.iter().filter(|verdict| verdict.agrees).count();
+            let largest = verdicts.iter().map(|verdict| verdict.uncertainty).fold(0.0, f64::max);
+            if let Some(middle) = median(verdicts.iter().map(|verdict| verdict.uncertainty).collect()) {
+                let (cases, silent) = (all.len(), all.len() - verdicts.len());
+                let name_of = family.name();
+                let _ = writeln!(
+                    page,
+                    "| {name} | {name_of} | {cases} | {agree} | {silent} | {middle:.1e} / {largest:.1e} |"
+                );
+            }
+        }
+    }
+    if !notes.is_empty() {
+        page.push('\n');
+        page += &notes;
     }
     page
 }
