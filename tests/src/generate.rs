@@ -84,7 +84,7 @@ impl Uniform {
         Uniform(Pcg64::seed_from_u64(state))
     }
 
-    /// One of many independent sequences from one first state.
+    /// One of many independent sequences with one first state.
     pub(crate) fn stream(state: u128, stream: u128) -> Uniform {
         Uniform(Pcg64::new(state, stream))
     }

@@ -80,7 +80,7 @@ pub enum NoBounds {
 const ROUNDING: f64 = 1e-9;
 /// Share of the bounds' difference that is refined in one round.
 const BULK: f64 = 0.6;
-/// Rounds of refinement: each at least doubles the triangles where they matter.
+/// Rounds of refinement; the triangles run out before.
 const ROUNDS: usize = 40;
 
 /// Bounds of the conductance, refined until they are within `width` of each other or there are `most` triangles.
