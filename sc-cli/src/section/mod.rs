@@ -176,7 +176,8 @@ fn compose(
     };
     remarks.extend(outline.warnings.iter().map(|&w| remark_on_outline(w, &file)));
     let outline = outline.value;
-    let stretch = stretch_of(&file)?;
+    let near = (0..outline.n()).find_map(|k| outline.point(k)).unwrap_or_default();
+    let stretch = stretch_of(&file)?.about(near);
     let span = file.material.as_ref().map_or_else(Span::default, |m| m.span);
     let stretched = outline.stretched(&stretch).map_err(|fault| vec![at_fabric(fault, span)])?;
     let held = held_sides(&file)?;

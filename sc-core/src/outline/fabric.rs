@@ -14,9 +14,9 @@ use super::faults::{OutlineFaults, OutlineWarning, VertexIdx};
 use super::{MAX_HEADING, Outline, Point, Vertex, heading};
 use thiserror::Error;
 
-/// Largest ratio of the conductivities along and across, either way. The coordinates across are then stretched
-/// 10⁴ times as much as those along, and their rounding with them.
-pub const MAX_CONTRAST: f64 = 1e8;
+/// Largest ratio of the conductivities along and across, either way. The coordinates across are then stretched a
+/// thousand times as much as those along, and their rounding with them; no material is known that comes near.
+pub const MAX_CONTRAST: f64 = 1e6;
 
 /// A fabric of thin parallel layers.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -109,7 +109,8 @@ impl Fabric {
         }
         let factor = (along / across).sqrt().sqrt();
         let dip = heading::reduce(dip);
-        Ok(Stretch { dip, layers: heading::unit(dip), factors: Some((1.0 / factor, factor)) })
+        let origin = Point::new(0.0, 0.0);
+        Ok(Stretch { dip, layers: heading::unit(dip), origin, factors: Some((1.0 / factor, factor)) })
     }
 }
 
@@ -119,13 +120,23 @@ pub struct Stretch {
     dip: f64,
     /// Unit vector along the layers.
     layers: Point,
+    /// The point that has the image zero.
+    origin: Point,
     /// Factors of lengths along and across the layers; `None` leaves every bit as it is.
     factors: Option<(f64, f64)>,
 }
 
 impl Stretch {
     /// No stretch at all.
-    pub const NONE: Stretch = Stretch { dip: 0.0, layers: Point::new(1.0, 0.0), factors: None };
+    pub const NONE: Stretch =
+        Stretch { dip: 0.0, layers: Point::new(1.0, 0.0), origin: Point::new(0.0, 0.0), factors: None };
+
+    /// The same stretch with another point, a vertex of the section, that has the image zero. Far from the origin the
+    /// differences of coordinates are exact, and rounding of the coordinates themselves would be multiplied.
+    #[must_use]
+    pub fn about(self, origin: Point) -> Stretch {
+        if self.is_none() { self } else { Stretch { origin, ..self } }
+    }
 
     /// Whether nothing is stretched.
     pub fn is_none(&self) -> bool {
@@ -146,24 +157,28 @@ impl Stretch {
     /// The image of a point.
     pub fn to_stretched(&self, z: Point) -> Point {
         let Some((along, across)) = self.factors else { return z };
-        self.scaled(z, along, across)
+        self.scaled(z - self.origin, along, across)
     }
 
     /// The point with a given image.
     pub fn to_true(&self, z: Point) -> Point {
         let Some((along, across)) = self.factors else { return z };
-        self.scaled(z, 1.0 / along, 1.0 / across)
+        self.scaled(z, 1.0 / along, 1.0 / across) + self.origin
     }
 
     /// The gradient in true coordinates of a potential whose gradient in stretched ones is given.
     pub fn gradient_to_true(&self, gradient: Point) -> Point {
         // M is symmetric: it maps gradients back as it maps points forth.
-        self.to_stretched(gradient)
+        let Some((along, across)) = self.factors else { return gradient };
+        self.scaled(gradient, along, across)
     }
 
     /// The factor of lengths along a unit vector.
     pub fn lengthening(&self, direction: Point) -> f64 {
-        if self.is_none() { 1.0 } else { self.to_stretched(direction).norm() }
+        match self.factors {
+            Some((along, across)) => self.scaled(direction, along, across).norm(),
+            None => 1.0,
+        }
     }
 
     /// The heading of the image of a direction, in degrees; less than a quarter turn from it, on the same side of
@@ -326,6 +341,18 @@ mod tests {
     }
 
     #[test]
+    fn a_section_far_away_is_stretched_as_one_at_the_origin() {
+        let fabric = Fabric { along: 1e6, across: 1.0, dip: 30.0 };
+        let (far, z) = (Point::new(65536.0, -131_072.0), Point::new(0.75, -0.5));
+        let (near, away) = (fabric.stretch().unwrap(), fabric.stretch().unwrap().about(far));
+        assert_eq!(away.to_stretched(far + z), near.to_stretched(z));
+        assert!((away.to_true(away.to_stretched(far + z)) - (far + z)).norm() < 1e-10);
+        assert_eq!(away.gradient_to_true(z), near.gradient_to_true(z));
+        assert_eq!(away.lengthening(Point::new(0.6, 0.8)), near.lengthening(Point::new(0.6, 0.8)));
+        assert!(Stretch::NONE.about(far).is_none());
+    }
+
+    #[test]
     fn headings_are_those_of_image_directions_and_opposite_ones_stay_opposite() {
         let mut seen = 0;
         for (contrast, dip) in [(9.0, 30.0), (0.01, 75.0), (1e6, -140.0)] {
@@ -389,11 +416,11 @@ mod tests {
 
     #[test]
     fn a_gap_that_the_stretch_would_close_is_refused() {
-        let points = [(0.0, 0.0), (1.0, 0.0), (1.0, 1e-7), (0.0, 1e-7)].map(|(x, y)| Vertex::at(x, y));
+        let points = [(0.0, 0.0), (1.0, 0.0), (1.0, 5e-7), (0.0, 5e-7)].map(|(x, y)| Vertex::at(x, y));
         let outline = Outline::new(&points).unwrap().value;
-        let fault = outline.stretched(&stretch(1.0, 1e7, 0.0)).unwrap_err();
+        let fault = outline.stretched(&stretch(1.0, 1e6, 0.0)).unwrap_err();
         assert!(matches!(fault, FabricFault::Unsound(_) | FabricFault::DetailLost { .. }), "{fault}");
-        assert!(outline.stretched(&stretch(1e7, 1.0, 0.0)).is_ok());
+        assert!(outline.stretched(&stretch(1e6, 1.0, 0.0)).is_ok());
     }
 
     #[test]
@@ -405,7 +432,7 @@ mod tests {
             (1.0, f64::INFINITY, 0.0),
             (1.0, 1.0, f64::NAN),
             (1.0, 1.0, 1e9),
-            (1e9, 1.0, 0.0),
+            (1.1e6, 1.0, 0.0),
             (1e-300, 1e300, 0.0),
         ] {
             assert!(Fabric { along, across, dip }.stretch().is_err(), "{along} {across} {dip}");
