@@ -23,7 +23,7 @@ fn generated_sections_of_every_family_are_solved() {
     let outcomes: Vec<Outcome> = cases.par_iter().map(|case| examine(case, true)).collect();
     let failed: Vec<String> = outcomes
         .iter()
-        .filter_map(|outcome| Some(format!("{}: {}", outcome.name(), outcome.result.as_ref().err()?)))
+        .filter_map(|outcome| Some(format!("{}: {}", outcome.name(), outcome.result.as_ref().err()?.message)))
         .collect();
     assert!(failed.is_empty(), "{failed:#?}");
 }

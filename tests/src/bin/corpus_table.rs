@@ -8,14 +8,14 @@
 //! * `--once`: without the second solution
 //! * `--unchecked`: without the independent methods that check one in fifty
 //! * `--threads N`: this many sections at a time, each on one thread (default 1)
-//! * `--failures FILE`: writes a line for each failure as it comes
-//! * `--log FILE`: writes a line for each section when it is taken up and when it is done
+//! * `--record FILE`: keeps each outcome in a file as it comes; started again, takes up where it was left
 //! * `--machine TEXT`: what the table says it was made on
 //!
 //! The exit status is 1 if less than 99.9 % are solved or an independent method contradicts an answer.
 
 #![allow(clippy::print_stdout, clippy::print_stderr, reason = "printing is what this command is for")]
 
+use std::collections::BTreeSet;
 use std::fs::File;
 use std::io::Write;
 use std::process::ExitCode;
@@ -38,8 +38,7 @@ struct Options {
     once: bool,
     unchecked: bool,
     threads: usize,
-    failures: Option<String>,
-    log: Option<String>,
+    record: Option<String>,
     machine: Option<String>,
 }
 
@@ -65,8 +64,7 @@ fn options() -> Result<Options, String> {
             "--count" => options.count = Some(number()?),
             "--threads" => options.threads = number()?.max(1),
             "--family" => options.families.push(family(&value)?),
-            "--failures" => options.failures = Some(value),
-            "--log" => options.log = Some(value),
+            "--record" => options.record = Some(value),
             "--machine" => options.machine = Some(value),
             "--case" => {
                 let (name, index) = value.split_once('/').ok_or("a case is NAME/NUMBER".to_owned())?;
@@ -107,20 +105,21 @@ fn main() -> ExitCode {
             return ExitCode::FAILURE;
         }
     };
-    let created = |path: &Option<String>| path.as_ref().map(File::create).transpose();
-    let (failures, log) = match (created(&options.failures), created(&options.log)) {
-        (Ok(failures), Ok(log)) => (failures, log),
-        (Err(error), _) | (_, Err(error)) => {
-            eprintln!("a file cannot be written: {error}");
-            return ExitCode::FAILURE;
-        }
-    };
-    let wanted = wanted(&options);
+    let mut wanted = wanted(&options);
     if let Some((family, index)) = options.one {
         describe(&case(family, index));
     }
+    let results = match options.record.as_deref().map_or(Ok(Results::default()), Results::kept_in) {
+        Ok(results) => results,
+        Err(error) => {
+            eprintln!("the record cannot be used: {error}");
+            return ExitCode::FAILURE;
+        }
+    };
+    let known: BTreeSet<(Family, usize)> = results.outcomes.iter().map(|o| (o.family, o.index)).collect();
+    wanted.retain(|case| !known.contains(case));
     let next = AtomicUsize::new(0);
-    let results = Mutex::new(Results { outcomes: Vec::new(), failures, log });
+    let results = Mutex::new(results);
     std::thread::scope(|scope| {
         for _ in 0..options.threads {
             scope.spawn(|| work(&options, &wanted, &next, &results));
@@ -137,46 +136,38 @@ fn main() -> ExitCode {
     }
 }
 
-/// What has come of the cases so far, and where it is written.
-#[derive(Debug)]
+/// What has come of the cases so far, and where it is kept.
+#[derive(Debug, Default)]
 struct Results {
     outcomes: Vec<Outcome>,
-    failures: Option<File>,
-    log: Option<File>,
+    record: Option<File>,
 }
 
 impl Results {
-    fn add(&mut self, outcome: Outcome) {
-        let name = outcome.name();
-        let ms = 1e3 * outcome.time.as_secs_f64();
-        match &outcome.result {
-            Ok(f) => {
-                let figures = format!(
-                    "{} iterations, residual {:.1e}, error {:.1e}",
-                    f.iterations, f.residual, f.estimate
-                );
-                write_line(&mut self.log, &format!("{name} ({} sides) {ms:.1} ms, {figures}", outcome.sides));
-            }
-            Err(why) => {
-                let line = format!("{name} ({} sides) {ms:.1} ms, {}: {why}", outcome.sides, why.rule());
-                write_line(&mut self.log, &line);
-                write_line(&mut self.failures, &line);
-            }
+    /// What a file holds already, an outcome a line; more is added to it. A last line cut short is dropped.
+    fn kept_in(path: &str) -> std::io::Result<Results> {
+        let before = std::fs::read_to_string(path).or_else(|error| match error.kind() {
+            std::io::ErrorKind::NotFound => Ok(String::new()),
+            _ => Err(error),
+        })?;
+        let outcomes: Vec<Outcome> =
+            before.lines().filter_map(|line| serde_json::from_str(line).ok()).collect();
+        let mut results = Results { outcomes: Vec::new(), record: Some(File::create(path)?) };
+        for outcome in outcomes {
+            results.add(outcome);
         }
-        for check in &outcome.checks {
-            let line = format!("{name} {check:?}");
-            write_line(&mut self.log, &line);
-            if check.verdict.as_ref().is_ok_and(|verdict| !verdict.agrees) {
-                write_line(&mut self.failures, &line);
+        Ok(results)
+    }
+
+    fn add(&mut self, outcome: Outcome) {
+        if let Some(file) = &mut self.record {
+            let written =
+                serde_json::to_string(&outcome).map_err(Into::into).and_then(|line| writeln!(file, "{line}"));
+            if let Err(error) = written {
+                eprintln!("{} cannot be recorded: {error}", outcome.name());
             }
         }
         self.outcomes.push(outcome);
-    }
-}
-
-fn write_line(file: &mut Option<File>, line: &str) {
-    if let Some(Err(error)) = file.as_mut().map(|file| writeln!(file, "{line}")) {
-        eprintln!("a line cannot be written ({error}): {line}");
     }
 }
 
@@ -189,10 +180,8 @@ fn work(options: &Options, wanted: &[(Family, usize)], next: &AtomicUsize, resul
             return;
         }
     };
-    let locked = || results.lock().unwrap_or_else(std::sync::PoisonError::into_inner);
     while let Some(&(family, index)) = wanted.get(next.fetch_add(1, Ordering::Relaxed)) {
         let case = case(family, index);
-        write_line(&mut locked().log, &format!("{} taken up", case.name()));
         let mut outcome = pool.install(|| examine(&case, !options.once));
         if let Ok(Some(conductance)) = outcome.result.as_ref().map(|figures| figures.conductance)
             && !options.unchecked
@@ -201,6 +190,6 @@ fn work(options: &Options, wanted: &[(Family, usize)], next: &AtomicUsize, resul
             outcome.checks =
                 pool.install(|| methods.map(|method| check(method, family, index, conductance)).collect());
         }
-        locked().add(outcome);
+        results.lock().unwrap_or_else(std::sync::PoisonError::into_inner).add(outcome);
     }
 }

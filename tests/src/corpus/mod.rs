@@ -16,12 +16,13 @@ mod unbounded;
 
 use num_complex::Complex64;
 use sc_core::outline::Vertex;
+use serde::{Deserialize, Serialize};
 
 use crate::held_section::{HeldSection, finite};
 use draw::Draw;
 
 /// A kind of section.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize)]
 pub enum Family {
     /// Closed paths through random points, untangled.
     Random,

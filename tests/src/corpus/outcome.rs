@@ -3,9 +3,9 @@
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::time::{Duration, Instant};
 
-use sc_core::answers::{Bounded, Solution, SolveError, SolveOptions};
+use sc_core::answers::{Solution, SolveError, SolveOptions};
 use sc_core::map::MapError;
-use thiserror::Error;
+use serde::{Deserialize, Serialize};
 
 use super::check::Check;
 use super::{Case, Family};
@@ -13,7 +13,7 @@ use crate::held_section::Refused;
 use crate::robustness::{RECIPROCITY, RESIDUAL_AT_WORST};
 
 /// The figures of a solved case.
-#[derive(Debug, Clone, Copy)]
+#[derive(Debug, Clone, Copy, Serialize, Deserialize)]
 pub struct Figures {
     /// Iterations of the parameter problem.
     pub iterations: u64,
@@ -21,8 +21,8 @@ pub struct Figures {
     pub residual: f64,
     /// Relative error that the program states.
     pub estimate: f64,
-    /// Conductance between the two levels, if there are two.
-    pub conductance: Option<Bounded>,
+    /// Conductance between the two levels with its stated error, if there are two.
+    pub conductance: Option<(f64, f64)>,
     /// `|G·G′ − 1|`, the two from independent maps and by different formulas; with two held runs only.
     pub reciprocity: Option<f64>,
     /// Decades between the largest and the smallest gap of the prevertices.
@@ -30,55 +30,35 @@ pub struct Figures {
 }
 
 /// Why a case does not count as solved.
-#[derive(Debug, Clone, PartialEq, Error)]
-pub enum Failure {
-    /// There is no solution.
-    #[error("{0}")]
-    Refused(#[from] Refused),
-    /// The program panicked.
-    #[error("panic: {0}")]
-    Panic(String),
-    /// A figure is not a finite number.
-    #[error("a figure is not a finite number: {0}")]
-    NotANumber(&'static str),
-    /// The sides of the map are not those of the outline.
-    #[error("side lengths are off by {0:.1e}")]
-    Residual(f64),
-    /// The conductance and the conjugate's do not agree.
-    #[error("G·G′ − 1 = {found:.1e}, with a stated error of {stated:.1e}")]
-    Reciprocity {
-        /// `|G·G′ − 1|`.
-        found: f64,
-        /// The error that the program states.
-        stated: f64,
-    },
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+pub struct Failure {
+    /// The rule, for counting.
+    pub rule: String,
+    /// What happened.
+    pub message: String,
 }
 
 impl Failure {
-    /// The rule, for counting.
-    #[must_use]
-    pub fn rule(&self) -> String {
-        match self {
-            Failure::Refused(Refused::Outline(_)) => "outline refused".into(),
-            Failure::Refused(Refused::Conditions(_)) => "conditions refused".into(),
-            Failure::Refused(Refused::Solution(error)) => match error {
-                SolveError::Map(MapError::Start(_)) => "no start".into(),
-                SolveError::Map(MapError::Rule(_)) => "no quadrature rule".into(),
-                SolveError::Map(MapError::NotConverged { stop, .. }) => format!("not converged: {stop}"),
-                SolveError::Map(_) => "no map".into(),
-                SolveError::Field(_) => "no field".into(),
-                _ => "no solution".into(),
-            },
-            Failure::Panic(_) => "panic".into(),
-            Failure::NotANumber(_) => "not a number".into(),
-            Failure::Residual(_) => "residual".into(),
-            Failure::Reciprocity { .. } => "G·G′".into(),
-        }
+    fn new(rule: &str, message: String) -> Failure {
+        Failure { rule: rule.to_owned(), message }
+    }
+
+    fn refused(refused: &Refused) -> Failure {
+        let rule = match refused {
+            Refused::Outline(_) => "outline refused",
+            Refused::Conditions(_) => "conditions refused",
+            Refused::Solution(SolveError::Map(MapError::Start(_))) => "no start",
+            Refused::Solution(SolveError::Map(MapError::Rule(_))) => "no quadrature rule",
+            Refused::Solution(SolveError::Map(MapError::NotConverged { .. })) => "not converged",
+            Refused::Solution(SolveError::Field(_)) => "no field",
+            Refused::Solution(_) => "no solution",
+        };
+        Failure::new(rule, refused.to_string())
     }
 }
 
 /// A case and what came of it.
-#[derive(Debug, Clone)]
+#[derive(Debug, Clone, Serialize, Deserialize)]
 pub struct Outcome {
     /// Its family.
     pub family: Family,
@@ -119,9 +99,9 @@ pub fn examine(case: &Case, check: bool) -> Outcome {
         Err(payload) => {
             let text = payload.downcast_ref::<String>().cloned();
             let text = text.or_else(|| payload.downcast_ref::<&str>().map(|s| (*s).to_owned()));
-            Err(Failure::Panic(text.unwrap_or_default()))
+            Err(Failure::new("panic", text.unwrap_or_default()))
         }
-        Ok(Err(refused)) => Err(refused.into()),
+        Ok(Err(refused)) => Err(Failure::refused(&refused)),
         Ok(Ok(solution)) => figures(&solution),
     };
     let sides = case.section.vertices.len();
@@ -134,29 +114,33 @@ fn figures(solution: &Solution) -> Result<Figures, Failure> {
         iterations: solution.map().effort().iterations,
         residual: solution.residual(),
         estimate: solution.relative_error(),
-        conductance: solution.shape_factor(),
+        conductance: solution.shape_factor().map(|g| (g.value, g.error)),
         reciprocity: solution.reciprocity(),
         decades: (high - low) / std::f64::consts::LN_10,
     };
     // No electrodes of a case touch, so all of its conductances are finite.
     let matrix = solution.matrix();
     if !matrix.values.iter().flatten().all(|g| g.is_finite()) {
-        return Err(Failure::NotANumber("conductance matrix"));
+        return Err(Failure::new("not a number", "an entry of the conductance matrix is not finite".into()));
     }
     let named = [
         ("residual", Some(figures.residual)),
         ("estimate", Some(figures.estimate)),
-        ("conductance", figures.conductance.map(|g| g.value)),
+        ("conductance", figures.conductance.map(|g| g.0)),
         ("G·G′", figures.reciprocity),
     ];
     if let Some((name, _)) = named.iter().find(|(_, x)| x.is_some_and(|x| !x.is_finite())) {
-        return Err(Failure::NotANumber(name));
+        return Err(Failure::new("not a number", format!("{name} is not finite")));
     }
     if figures.residual > RESIDUAL_AT_WORST {
-        return Err(Failure::Residual(figures.residual));
+        let message = format!("side lengths are off by {:.1e}", figures.residual);
+        return Err(Failure::new("residual", message));
     }
     match figures.reciprocity {
-        Some(found) if found > RECIPROCITY => Err(Failure::Reciprocity { found, stated: figures.estimate }),
+        Some(found) if found > RECIPROCITY => {
+            let message = format!("G·G′ − 1 = {found:.1e}, with a stated error of {:.1e}", figures.estimate);
+            Err(Failure::new("G·G′", message))
+        }
         _ => Ok(figures),
     }
 }

@@ -82,17 +82,16 @@ fn failures(outcomes: &[Outcome]) -> String {
     if failed.is_empty() {
         return page + "None.\n";
     }
-    let mut rules: BTreeMap<String, usize> = BTreeMap::new();
+    let mut rules: BTreeMap<&str, usize> = BTreeMap::new();
     for (_, why) in &failed {
-        *rules.entry(why.rule()).or_default() += 1;
+        *rules.entry(&why.rule).or_default() += 1;
     }
     for (rule, count) in rules {
         let _ = writeln!(page, "- {rule}: {count}");
     }
     page.push('\n');
     for (outcome, why) in failed {
-        let _ =
-            writeln!(page, "- {}/{} ({} sides): {why}", outcome.family.name(), outcome.index, outcome.sides);
+        let _ = writeln!(page, "- {} ({} sides): {}", outcome.name(), outcome.sides, why.message);
     }
     page
 }
